@@ -3,6 +3,7 @@
  * rounded times is exact, a rounded difference would not reconcile with them. */
 #pragma once
 
+#include <stdbool.h>
 #include <stdint.h>
 
 typedef enum { HW_ROUND_DOWN, HW_ROUND_UP, HW_ROUND_HALF_UP, HW_ROUND_HALF_EVEN } HwRounding;

@@ -34,7 +34,7 @@ typedef struct {
     double time_limit_percent; /* 0: none */
     int places_that_matter;
     int64_t correction_limit_ns; /* 0: none named */
-    double p_order_limit;
+    double p_order_limit;       /* largest chance of the wrong order at which two count as told apart */
     char *json; /* the text it was read from */
 } HwRules;
 
