@@ -24,8 +24,7 @@ typedef enum {
 } HwField;
 
 /* Our own name of a field: "bib", "start_actual". */
-const char *
-hw_field_get_name(HwField field);
+const char *hw_field_get_name(HwField field);
 
 typedef struct {
     guint column[HW_N_FIELDS]; /* G_MAXUINT: not in the table */
@@ -34,9 +33,7 @@ typedef struct {
 /* `by_hand` is "bib=Dossard,name=Coureur" or NULL; it wins over what is recognised. Fails
  * (HW_RULING_ERROR_START_LIST) where a named header is not in the table, a field is unknown, or two headers
  * would mean one field (say which by hand). */
-bool
-hw_column_map_make(const HwCsvTable *table, const char *by_hand, HwColumnMap *map, GError **error);
+bool hw_column_map_make(const HwCsvTable *table, const char *by_hand, HwColumnMap *map, GError **error);
 
 /* "bib ← Dossard, name ← Nom": what was understood, to be shown. Owned by the caller. */
-char *
-hw_column_map_dup_text(const HwColumnMap *map, const HwCsvTable *table);
+char *hw_column_map_dup_text(const HwColumnMap *map, const HwCsvTable *table);

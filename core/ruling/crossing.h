@@ -14,8 +14,9 @@ typedef struct {
     const HwMarker *rear;
     const HwRider *rider; /* NULL: unnamed, or not in the start list */
     bool unnamed;
-    int64_t front_ns;
-    int64_t rear_ns;
+    bool is_ordered;  /* has the edge that decides; what follows holds only then */
+    int64_t front_ns; /* where front is there */
+    int64_t rear_ns;  /* where rear is there */
     int64_t order_ns; /* of the edge that decides the order */
     double order_column;
     guint clock; /* of the time base's run; no gap is computed between two clocks */
@@ -23,7 +24,9 @@ typedef struct {
 } HwCrossing;
 
 typedef struct {
-    GArray *crossings;   /* HwCrossing, by order_ns; ties by bib, and told as ties by who ranks them */
+    GArray
+        *crossings;      /* HwCrossing, those ordered first, by order_ns; where it is equal
+                          by bib, so that no order of insertion ever decides (who ranks them calls that a tie) */
     char *passage;       /* which was taken; "" where nobody named one */
     GPtrArray *problems; /* char* */
 } HwCrossings;
@@ -32,9 +35,7 @@ typedef struct {
  * passages and none named; markers that do not say which of several passages they belong to; a bib twice in
  * the passage; a bib that stands in several categories with none named. Markers against the travel are left
  * out and told. */
-HwCrossings *
-hw_crossings_make(const HwFinishInput *input, GError **error);
-void
-hw_crossings_free(HwCrossings *crossings);
+HwCrossings *hw_crossings_make(const HwFinishInput *input, GError **error);
+void hw_crossings_free(HwCrossings *crossings);
 
 G_DEFINE_AUTOPTR_CLEANUP_FUNC(HwCrossings, hw_crossings_free)

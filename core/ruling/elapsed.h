@@ -17,8 +17,7 @@ typedef enum {
 } HwStartSource;
 
 /* "none", "gun", "wave", "scheduled", "gate": as in files. */
-const char *
-hw_start_source_get_word(HwStartSource source);
+const char *hw_start_source_get_word(HwStartSource source);
 
 /* The gate's time counts where it is at most this much early or late (UCI 2.4.013: slightly before zero,
  * within 5 s after; how much "slightly" is, is our reading). */
@@ -36,6 +35,5 @@ typedef struct {
 /* A rider's own start wins over the wave of the category, that over the wave "*", that over `gun`. rider,
  * race, gun may be NULL; `category` is the rider's. False where the difference does not fit (then *elapsed is
  * untouched). */
-bool
-hw_elapsed_make(const HwInstant *epoch, int64_t crossing_ns, const HwRider *rider, const char *category,
-                const HwRace *race, const HwInstant *gun, HwElapsed *elapsed);
+bool hw_elapsed_make(const HwInstant *epoch, int64_t crossing_ns, const HwRider *rider, const char *category,
+                     const HwRace *race, const HwInstant *gun, HwElapsed *elapsed);

@@ -37,6 +37,8 @@ typedef struct {
     char *nation;
     char *category;
     char *uci_id;
+    bool in_start_list;
+    bool unnamed; /* a placeholder stands for the bib */
     HwStatus status;
     int laps_behind;
     bool crossed;  /* has a marker in this passage; what follows holds only then */
@@ -46,6 +48,10 @@ typedef struct {
     int64_t crossing_ns; /* since the epoch */
     HwStartSource start_source;
     bool gate_refused;
+    guint clock;      /* of the time base */
+    double u_ns;      /* standard uncertainty of the reading */
+    double speed_mps; /* NAN where not measured */
+    double u_speed_mps;
     bool has_elapsed; /* a start is known and lies before the crossing */
     int64_t time_ns;  /* elapsed, measured; from the epoch where no start is known */
     bool has_official;
@@ -95,32 +101,23 @@ typedef struct {
 } HwFinishList;
 
 /* Fails only as hw_crossings_make does; everything else is a problem in the list. */
-HwFinishList *
-hw_finish_list_new(const HwFinishInput *input, GError **error);
-void
-hw_finish_list_free(HwFinishList *list);
+HwFinishList *hw_finish_list_new(const HwFinishInput *input, GError **error);
+void hw_finish_list_free(HwFinishList *list);
 
 /* The rider check of one team (NULL: all; "" riders without a team). */
-HwRiderCheck
-hw_rider_check_make(const HwFinishList *list, const HwStartList *start_list, const char *team);
+HwRiderCheck hw_rider_check_make(const HwFinishList *list, const HwStartList *start_list, const char *team);
 
 /* Everything from files: places checked, marker blocks decoded, list derived. *strip is exchanged for the
  * refreshed one. */
-HwFinishList *
-hw_finish_list_derive(HwFinishInput *input, GCancellable *cancellable, GError **error);
+HwFinishList *hw_finish_list_derive(HwFinishInput *input, GCancellable *cancellable, GError **error);
 
 /* The list as `rank` prints it. Owned by the caller. */
-char *
-hw_finish_list_dup_json(const HwFinishList *list);
-char *
-hw_finish_list_dup_csv(const HwFinishList *list);
-char *
-hw_finish_list_dup_text(const HwFinishList *list);
+char *hw_finish_list_dup_json(const HwFinishList *list);
+char *hw_finish_list_dup_csv(const HwFinishList *list);
+char *hw_finish_list_dup_text(const HwFinishList *list);
 
 /* Official time of a row ("1:12:04", "s.t."), its gap ("+0.004"): for screens and sheets. "" where none. */
-char *
-hw_finish_row_dup_time(const HwFinishList *list, const HwFinishRow *row);
-char *
-hw_finish_row_dup_gap(const HwFinishList *list, const HwFinishRow *row);
+char *hw_finish_row_dup_time(const HwFinishList *list, const HwFinishRow *row);
+char *hw_finish_row_dup_gap(const HwFinishList *list, const HwFinishRow *row);
 
 G_DEFINE_AUTOPTR_CLEANUP_FUNC(HwFinishList, hw_finish_list_free)

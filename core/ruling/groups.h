@@ -33,5 +33,5 @@ typedef struct {
 /* The state of each rider towards the group before: states[0] is NEW. Riders stand in order of front_ns. A
  * rider of state REAR_NEEDED may belong to either group: bounds then hold for both. `needs[i]` is the place
  * of the rider whose rear wheel would decide (else −1). Arrays have n entries. */
-void
-hw_groups_find(const HwGroupRider *riders, int n, const HwGroupRule *rule, HwGroupState *states, int *needs);
+void hw_groups_find(const HwGroupRider *riders, int n, const HwGroupRule *rule, HwGroupState *states,
+                    int *needs);

@@ -25,7 +25,7 @@ typedef struct {
     char *bib;      /* or a placeholder, "?1" */
     char *category; /* "" unless needed to tell two riders with one bib apart */
     double column;
-    double row;
+    double row; /* NAN where not given */
     HwEdge edge;
     char *passage; /* "" where not said */
     char *camera;
@@ -43,52 +43,41 @@ typedef struct {
     guint line; /* of the file; 0 where it has none */
 } HwMarker;
 
-HwMarker *
-hw_marker_new(const char *bib, double column, double row);
-HwMarker *
-hw_marker_copy(const HwMarker *marker);
-void
-hw_marker_free(HwMarker *marker);
+HwMarker *hw_marker_new(const char *bib, double column, double row);
+HwMarker *hw_marker_copy(const HwMarker *marker);
+void hw_marker_free(HwMarker *marker);
 
 /* True for "?1", "?", "": nobody named yet. */
-bool
-hw_marker_is_unnamed(const HwMarker *marker);
+bool hw_marker_is_unnamed(const HwMarker *marker);
 
 typedef struct {
     char *path;
-    GPtrArray *markers; /* of HwMarker*, in the file's order */
+    bool names_recording; /* every marker says which recording it was made on */
+    GPtrArray *markers;   /* of HwMarker*, in the file's order */
 } HwMarkers;
 
-HwMarkers *
-hw_markers_new(void);
-HwMarkers *
-hw_markers_copy(const HwMarkers *markers);
-void
-hw_markers_free(HwMarkers *markers);
+HwMarkers *hw_markers_new(void);
+HwMarkers *hw_markers_copy(const HwMarkers *markers);
+void hw_markers_free(HwMarkers *markers);
 
 /* Reads the CSV and holds it against the recording. Fails (HW_RULING_ERROR_MARKERS): columns bib or column
  * missing, a number that is none, an unknown word, a marker of another recording. */
-HwMarkers *
-hw_markers_read(const char *path, const HwRecording *recording, GError **error);
-HwMarkers *
-hw_markers_parse(const char *data, gsize size, const char *label, const HwRecording *recording,
-                 GError **error);
+HwMarkers *hw_markers_read(const char *path, const HwRecording *recording, GError **error);
+HwMarkers *hw_markers_parse(const char *data, gsize size, const char *label, const HwRecording *recording,
+                            GError **error);
 
 /* Fails where a marker stands off the strip, in a void, or its time in the file is half a column or more from
  * that of its column. */
-bool
-hw_markers_check_places(const HwMarkers *markers, HwStrip *strip, GError **error);
+bool hw_markers_check_places(const HwMarkers *markers, HwStrip *strip, GError **error);
 
 /* Decodes the blocks that carry markers, so that damage in them is known: returns the refreshed strip (new
  * reference), and how many blocks carry none. NULL with an error where nothing readable is left, or
  * cancelled. */
-HwStrip *
-hw_markers_check_blocks(const HwMarkers *markers, HwStrip *strip, guint *n_unchecked,
-                        GCancellable *cancellable, GError **error);
+HwStrip *hw_markers_check_blocks(const HwMarkers *markers, HwStrip *strip, guint *n_unchecked,
+                                 GCancellable *cancellable, GError **error);
 
 /* The CSV, with `recording` always written and times by the strip's time base. Owned by the caller. */
-char *
-hw_markers_dup_csv(const HwMarkers *markers, HwStrip *strip);
+char *hw_markers_dup_csv(const HwMarkers *markers, HwStrip *strip);
 
 G_DEFINE_AUTOPTR_CLEANUP_FUNC(HwMarker, hw_marker_free)
 G_DEFINE_AUTOPTR_CLEANUP_FUNC(HwMarkers, hw_markers_free)

@@ -271,3 +271,29 @@ hw_race_read(const char *path, GError **error)
     g_autofree char *text = hw_input_read(path, HW_MAX_MANIFEST_BYTES, &size, error);
     return text != NULL ? hw_race_parse(text, size, path, error) : NULL;
 }
+
+const HwRaceStatus *
+hw_race_find_status(const HwRace *race, const char *bib, const char *category)
+{
+    const HwRaceStatus *found = NULL;
+    for (guint i = 0; race != NULL && i < race->statuses->len; i++) {
+        const HwRaceStatus *status = &g_array_index(race->statuses, HwRaceStatus, i);
+        if (strcmp(status->bib, bib) != 0)
+            continue;
+        if (strcmp(status->category, category) == 0)
+            return status;
+        if (*status->category == '\0')
+            found = status;
+    }
+    return found;
+}
+
+bool
+hw_race_in_breakaway(const HwRace *race, const char *bib)
+{
+    for (guint i = 0; race != NULL && i < race->breakaway->len; i++) {
+        if (strcmp(g_ptr_array_index(race->breakaway, i), bib) == 0)
+            return true;
+    }
+    return false;
+}

@@ -18,8 +18,7 @@ typedef enum {
 } HwPassageKind;
 
 /* "finish", "sprint", …: as in files. */
-const char *
-hw_passage_kind_get_word(HwPassageKind kind);
+const char *hw_passage_kind_get_word(HwPassageKind kind);
 
 typedef struct {
     char *category; /* "*": all that have none of their own */
@@ -58,11 +57,15 @@ typedef struct {
     double distance_km;   /* 0: not given */
 } HwRace;
 
-HwRace *
-hw_race_read(const char *path, GError **error);
-HwRace *
-hw_race_parse(const char *text, gsize size, const char *label, GError **error);
-void
-hw_race_free(HwRace *race);
+HwRace *hw_race_read(const char *path, GError **error);
+HwRace *hw_race_parse(const char *text, gsize size, const char *label, GError **error);
+void hw_race_free(HwRace *race);
+
+/* The status the race gives a rider; one that names the category wins. NULL where it gives none (race may be
+ * NULL). */
+const HwRaceStatus *hw_race_find_status(const HwRace *race, const char *bib, const char *category);
+
+/* True where the bib is of the declared breakaway (race may be NULL). */
+bool hw_race_in_breakaway(const HwRace *race, const char *bib);
 
 G_DEFINE_AUTOPTR_CLEANUP_FUNC(HwRace, hw_race_free)

@@ -13,5 +13,4 @@ extern const char *const hw_rounding_words[];
 
 /* `elapsed_ns` ≥ 0 to a multiple of precision_ns > 0. Times below zero round by the same rule on the number
  * line (down is towards minus infinity). */
-int64_t
-hw_round_elapsed(int64_t elapsed_ns, int64_t precision_ns, HwRounding rounding);
+int64_t hw_round_elapsed(int64_t elapsed_ns, int64_t precision_ns, HwRounding rounding);

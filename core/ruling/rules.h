@@ -34,28 +34,22 @@ typedef struct {
     double time_limit_percent; /* 0: none */
     int places_that_matter;
     int64_t correction_limit_ns; /* 0: none named */
-    double p_order_limit;       /* largest chance of the wrong order at which two count as told apart */
-    char *json; /* the text it was read from */
+    double p_order_limit;        /* largest chance of the wrong order at which two count as told apart */
+    char *json;                  /* the text it was read from */
 } HwRules;
 
 /* The shipped ids, NULL-ended. */
-const char *const *
-hw_rules_get_ids(void);
+const char *const *hw_rules_get_ids(void);
 
 /* A shipped id, or the path of a file. NULL with HW_RULING_ERROR_RULES. */
-HwRules *
-hw_rules_read(const char *id_or_path, GError **error);
-HwRules *
-hw_rules_parse(const char *text, gsize size, const char *label, GError **error);
-void
-hw_rules_free(HwRules *rules);
+HwRules *hw_rules_read(const char *id_or_path, GError **error);
+HwRules *hw_rules_parse(const char *text, gsize size, const char *label, GError **error);
+void hw_rules_free(HwRules *rules);
 
 /* The rule set in words a commissaire would recognise, a paragraph with line breaks. Owned by the caller. */
-char *
-hw_rules_dup_text(const HwRules *rules);
+char *hw_rules_dup_text(const HwRules *rules);
 
 /* One line: title, article, edition. Owned by the caller. */
-char *
-hw_rules_dup_line(const HwRules *rules);
+char *hw_rules_dup_line(const HwRules *rules);
 
 G_DEFINE_AUTOPTR_CLEANUP_FUNC(HwRules, hw_rules_free)

@@ -13,5 +13,4 @@ typedef enum {
 } HwRulingError;
 
 #define HW_RULING_ERROR (hw_ruling_error_quark())
-GQuark
-hw_ruling_error_quark(void);
+GQuark hw_ruling_error_quark(void);

@@ -41,20 +41,17 @@ typedef struct {
 /* Reads a list. `map_by_hand` as for hw_column_map_make, may be NULL. Fails (HW_RULING_ERROR_START_LIST)
  * without a bib column, with an empty bib, a bib that stands twice in its category, a start that is neither
  * instant nor time of day, a diameter outside 0.3 … 1 m, an unknown status. */
-HwStartList *
-hw_start_list_read(const char *path, const char *map_by_hand, GError **error);
-HwStartList *
-hw_start_list_parse(const char *data, gsize size, const char *label, const char *map_by_hand, GError **error);
-void
-hw_start_list_free(HwStartList *list);
+HwStartList *hw_start_list_read(const char *path, const char *map_by_hand, GError **error);
+HwStartList *hw_start_list_parse(const char *data, gsize size, const char *label, const char *map_by_hand,
+                                 GError **error);
+void hw_start_list_free(HwStartList *list);
 
 /* The rider with a bib; `category` NULL or "" for any. NULL where there is none; *ambiguous where the bib
  * stands in several categories and none was named. */
-const HwRider *
-hw_start_list_find(const HwStartList *list, const char *bib, const char *category, bool *ambiguous);
+const HwRider *hw_start_list_find(const HwStartList *list, const char *bib, const char *category,
+                                  bool *ambiguous);
 
 /* Bibs compare as people order them: by number first, then as text. */
-int
-hw_bib_compare(const char *a, const char *b);
+int hw_bib_compare(const char *a, const char *b);
 
 G_DEFINE_AUTOPTR_CLEANUP_FUNC(HwStartList, hw_start_list_free)

@@ -17,11 +17,9 @@ typedef enum {
 } HwStatus;
 
 /* "ok", "LAP", … "not_seen", "unknown": as in files. */
-const char *
-hw_status_get_word(HwStatus status);
+const char *hw_status_get_word(HwStatus status);
 
 /* A status as people write it in a start list: any case; DNS, DNF, ABD, OTL, DSQ, LAP, French NP, AB, HD, DBL
  * (from memory), "ok" or empty for none. "LAP 2" gives laps_behind 2, else 0. False, results untouched, for
  * anything else. */
-bool
-hw_status_parse(const char *text, HwStatus *status, int *laps_behind);
+bool hw_status_parse(const char *text, HwStatus *status, int *laps_behind);

@@ -21,39 +21,28 @@ typedef struct {
 
 typedef struct HwAxis HwAxis;
 
-HwAxis *
-hw_axis_new(const HwTimeBase *base);
-HwAxis *
-hw_axis_ref(HwAxis *axis);
-void
-hw_axis_unref(HwAxis *axis);
+HwAxis *hw_axis_new(const HwTimeBase *base);
+HwAxis *hw_axis_ref(HwAxis *axis);
+void hw_axis_unref(HwAxis *axis);
 
-int64_t
-hw_axis_get_n_cells(const HwAxis *axis);
-guint
-hw_axis_get_n_spans(const HwAxis *axis);
-const HwAxisSpan *
-hw_axis_get_span(const HwAxis *axis, guint index);
+int64_t hw_axis_get_n_cells(const HwAxis *axis);
+guint hw_axis_get_n_spans(const HwAxis *axis);
+const HwAxisSpan *hw_axis_get_span(const HwAxis *axis, guint index);
 
 /* Span that holds a position; positions off the axis give the first or last. */
-guint
-hw_axis_span_at(const HwAxis *axis, double position);
+guint hw_axis_span_at(const HwAxis *axis, double position);
 
 /* Position of a column position (clamped to the axis). */
-double
-hw_axis_position(const HwAxis *axis, double column);
+double hw_axis_position(const HwAxis *axis, double column);
 
 /* Column position at a position; false in a void or off the axis. */
-bool
-hw_axis_column(const HwAxis *axis, double position, double *column);
+bool hw_axis_column(const HwAxis *axis, double position, double *column);
 
 /* Instant at a position, voids included (linear in them), beyond the ends by the nominal period. For rulers.
  */
-int64_t
-hw_axis_instant(const HwAxis *axis, double position);
+int64_t hw_axis_instant(const HwAxis *axis, double position);
 
 /* Position of an instant, voids included; clamped to the axis. */
-double
-hw_axis_position_of_instant(const HwAxis *axis, int64_t ns);
+double hw_axis_position_of_instant(const HwAxis *axis, int64_t ns);
 
 G_DEFINE_AUTOPTR_CLEANUP_FUNC(HwAxis, hw_axis_unref)

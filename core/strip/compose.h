@@ -29,12 +29,10 @@ typedef struct {
 /* Fills width_px × height_px pixels (0xffRRGGBB in native order, as Cairo's RGB24 and GTK's B8G8R8A8 on
  * little-endian); `stride` in pixels. A block that turns out damaged is drawn as void (learn of it with
  * hw_strip_refreshed). False only where cancelled or memory fails; the pixels are then undefined. */
-bool
-hw_compose(HwStrip *strip, const HwAxis *axis, const HwViewMap *map, const HwTone *tone, uint32_t *pixels,
-           int stride, GCancellable *cancellable, GError **error);
+bool hw_compose(HwStrip *strip, const HwAxis *axis, const HwViewMap *map, const HwTone *tone,
+                uint32_t *pixels, int stride, GCancellable *cancellable, GError **error);
 
 /* As above but only from what the cache holds, without waiting: *holes says whether something was missing
  * (drawn as HW_COMPOSE_VOID). */
-bool
-hw_compose_cached(HwStrip *strip, const HwAxis *axis, const HwViewMap *map, const HwTone *tone,
-                  uint32_t *pixels, int stride, bool *holes, GError **error);
+bool hw_compose_cached(HwStrip *strip, const HwAxis *axis, const HwViewMap *map, const HwTone *tone,
+                       uint32_t *pixels, int stride, bool *holes, GError **error);

@@ -11,9 +11,8 @@
 #include <stddef.h>
 #include <stdint.h>
 
-HwRaster *
-hw_png_block_decode(const uint8_t *data, size_t size, const char *file, GError **error);
+HwRaster *hw_png_block_decode(const uint8_t *data, size_t size, const char *file, GError **error);
 
 /* GREY asks libjpeg for Y alone; STORED gives grey or RGB (JDCT_ISLOW). */
-HwRaster *
-hw_jpeg_block_decode(const uint8_t *data, size_t size, HwPlane plane, const char *file, GError **error);
+HwRaster *hw_jpeg_block_decode(const uint8_t *data, size_t size, HwPlane plane, const char *file,
+                               GError **error);

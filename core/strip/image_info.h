@@ -16,10 +16,8 @@ typedef struct {
 } HwImageInfo;
 
 /* By the first bytes only (at least 8). */
-HwImageKind
-hw_image_kind(const uint8_t *data, size_t size);
+HwImageKind hw_image_kind(const uint8_t *data, size_t size);
 
 /* Kind and size from a file that is open for reading (its offset is moved). False with HW_STRIP_ERROR_DAMAGED
  * whose message is the reason, beginning with `file`: another kind, cut, zero or over HW_MAX_BLOCK_PIXELS. */
-bool
-hw_image_info_read(int fd, const char *file, HwImageInfo *info, GError **error);
+bool hw_image_info_read(int fd, const char *file, HwImageInfo *info, GError **error);

@@ -8,6 +8,5 @@
 
 /* What is written; the text of recording.json with a final newline. `exposure_fs` and the like as in HwScan;
  * blocks with their digests. Owned by the caller. */
-char *
-hw_manifest_dup_text(const char *title, const char *epoch_text, const char *camera, HwSide travel,
-                     HwSide later, const HwScan *scan, const HwBlock *blocks, guint n_blocks);
+char *hw_manifest_dup_text(const char *title, const char *epoch_text, const char *camera, HwSide travel,
+                           HwSide later, const HwScan *scan, const HwBlock *blocks, guint n_blocks);

@@ -40,12 +40,9 @@ typedef enum {
 } HwRasterNote;
 
 /* NULL where the memory is not to be had. width, height > 0 and within HW_MAX_BLOCK_PIXELS. */
-HwRaster *
-hw_raster_new(int width, int height, int channels, int bits);
-HwRaster *
-hw_raster_ref(HwRaster *raster);
-void
-hw_raster_unref(HwRaster *raster);
+HwRaster *hw_raster_new(int width, int height, int channels, int bits);
+HwRaster *hw_raster_ref(HwRaster *raster);
+void hw_raster_unref(HwRaster *raster);
 
 /* One sample, 0 … 2^bits − 1. */
 static inline unsigned
@@ -57,13 +54,11 @@ hw_raster_get(const HwRaster *raster, int column, int row, int channel)
 }
 
 /* Turns left and right about, in place, before the raster is shared. */
-void
-hw_raster_mirror(HwRaster *raster);
+void hw_raster_mirror(HwRaster *raster);
 
 /* The grey of stored samples, for images that have none of their own (new raster; itself, referenced, where
  * it is grey already). RGB and alpha give 16 bits, so that the weights lose nothing. NULL where memory fails.
  */
-HwRaster *
-hw_raster_dup_grey(HwRaster *stored);
+HwRaster *hw_raster_dup_grey(HwRaster *stored);
 
 G_DEFINE_AUTOPTR_CLEANUP_FUNC(HwRaster, hw_raster_unref)

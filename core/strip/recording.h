@@ -54,8 +54,7 @@ typedef struct HwRecording HwRecording;
  * range, unsafe or repeated names, files that are links or not regular, blocks that start before the former
  * one's end (as far as the manifest alone tells) or end before they start. A file that is missing is no error
  * here. */
-HwRecording *
-hw_recording_open(const char *path, GError **error);
+HwRecording *hw_recording_open(const char *path, GError **error);
 
 /* What a bare image needs to be told. */
 typedef struct {
@@ -72,70 +71,49 @@ typedef struct {
 
 /* A bare PNG or JPEG as a recording of one block whose first column's stamp is 0. It has no manifest, so no
  * digest. */
-HwRecording *
-hw_recording_open_image(const char *path, const HwImageScan *scan, GError **error);
+HwRecording *hw_recording_open_image(const char *path, const HwImageScan *scan, GError **error);
 
 /* True where the file begins as a PNG or JPEG does. */
-bool
-hw_recording_path_is_image(const char *path);
+bool hw_recording_path_is_image(const char *path);
 
-HwRecording *
-hw_recording_ref(HwRecording *recording);
-void
-hw_recording_unref(HwRecording *recording);
+HwRecording *hw_recording_ref(HwRecording *recording);
+void hw_recording_unref(HwRecording *recording);
 
 /* The path as given (without recording.json); its last part is the recording's NAME, by which files beside it
  * are found. */
-const char *
-hw_recording_get_path(const HwRecording *recording);
+const char *hw_recording_get_path(const HwRecording *recording);
 /* PATH + suffix (".markers.csv") if that file is there, else NULL. Owned by the caller. */
-char *
-hw_recording_dup_beside(const HwRecording *recording, const char *suffix);
+char *hw_recording_dup_beside(const HwRecording *recording, const char *suffix);
 
-const char *
-hw_recording_get_title(const HwRecording *recording); /* "" where none */
-const char *
-hw_recording_get_camera(const HwRecording *recording);
-const HwInstant *
-hw_recording_get_epoch(const HwRecording *recording);
-HwSide
-hw_recording_get_travel(const HwRecording *recording); /* may be unknown */
-HwSide
-hw_recording_get_later(const HwRecording *recording);
-const HwScan *
-hw_recording_get_scan(const HwRecording *recording);
-int64_t
-hw_recording_get_rows(const HwRecording *recording); /* 0: not given */
-bool
-hw_recording_is_complete(const HwRecording *recording); /* false while still being written */
-const json_t *
-hw_recording_get_scene(const HwRecording *recording); /* may be NULL */
+const char *hw_recording_get_title(const HwRecording *recording); /* "" where none */
+const char *hw_recording_get_camera(const HwRecording *recording);
+const HwInstant *hw_recording_get_epoch(const HwRecording *recording);
+HwSide hw_recording_get_travel(const HwRecording *recording); /* may be unknown */
+HwSide hw_recording_get_later(const HwRecording *recording);
+const HwScan *hw_recording_get_scan(const HwRecording *recording);
+int64_t hw_recording_get_rows(const HwRecording *recording);        /* 0: not given */
+bool hw_recording_is_complete(const HwRecording *recording);        /* false while still being written */
+const json_t *hw_recording_get_scene(const HwRecording *recording); /* may be NULL */
 
-guint
-hw_recording_get_n_blocks(const HwRecording *recording);
-const HwBlock *
-hw_recording_get_block(const HwRecording *recording, guint index);
+guint hw_recording_get_n_blocks(const HwRecording *recording);
+const HwBlock *hw_recording_get_block(const HwRecording *recording, guint index);
 
 /* Opens a file the manifest names, under the rules of core/base/safe_path.h. −1 with HW_STRIP_ERROR_DAMAGED
  * whose message is the void's reason ("block-00003.png is missing"). */
-int
-hw_recording_open_file(const HwRecording *recording, const char *file, GError **error);
+int hw_recording_open_file(const HwRecording *recording, const char *file, GError **error);
 
 /* SHA-256 of epoch text, LF, camera, LF, first block's file name, LF, its first stamp, LF. */
-const HwDigest *
-hw_recording_get_identity(const HwRecording *recording);
+const HwDigest *hw_recording_get_identity(const HwRecording *recording);
 
 /* The first 16 hex digits of the identity, as markers carry them. Borrowed. */
-const char *
-hw_recording_get_short_identity(const HwRecording *recording);
+const char *hw_recording_get_short_identity(const HwRecording *recording);
 
 typedef void (*HwProgress)(double fraction, gpointer user_data);
 
 /* Digest of the recording: SHA-256 of the lines that sha256sum prints for recording.json and every file it
  * names, sorted by name as bytes. Reads every file. *known is false, and no error, while a file is missing
  * (or there is no manifest). */
-bool
-hw_recording_digest(const HwRecording *recording, HwProgress progress, gpointer user_data,
-                    GCancellable *cancellable, bool *known, HwDigest *digest, GError **error);
+bool hw_recording_digest(const HwRecording *recording, HwProgress progress, gpointer user_data,
+                         GCancellable *cancellable, bool *known, HwDigest *digest, GError **error);
 
 G_DEFINE_AUTOPTR_CLEANUP_FUNC(HwRecording, hw_recording_unref)

@@ -13,5 +13,4 @@ typedef enum {
 } HwStripError;
 
 #define HW_STRIP_ERROR (hw_strip_error_quark())
-GQuark
-hw_strip_error_quark(void);
+GQuark hw_strip_error_quark(void);

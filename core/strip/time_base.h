@@ -57,56 +57,39 @@ typedef struct HwTimeBase HwTimeBase;
 
 /* From all blocks of a recording in order. Fails (HW_STRIP_ERROR_MANIFEST) where a block starts before the
  * former one's end. Problems that are no failure are kept as sentences. */
-HwTimeBase *
-hw_time_base_new(const HwScan *scan, const HwTimedBlock *blocks, guint n_blocks, GError **error);
-HwTimeBase *
-hw_time_base_ref(HwTimeBase *base);
-void
-hw_time_base_unref(HwTimeBase *base);
+HwTimeBase *hw_time_base_new(const HwScan *scan, const HwTimedBlock *blocks, guint n_blocks, GError **error);
+HwTimeBase *hw_time_base_ref(HwTimeBase *base);
+void hw_time_base_unref(HwTimeBase *base);
 
-int64_t
-hw_time_base_get_n_columns(const HwTimeBase *base);
+int64_t hw_time_base_get_n_columns(const HwTimeBase *base);
 
 /* The nominal period in ns, not rounded. */
-double
-hw_time_base_get_period_ns(const HwTimeBase *base);
+double hw_time_base_get_period_ns(const HwTimeBase *base);
 
 /* Instant of a column position. False, *ns untouched, off the strip or in a void. A position that is the end
  * of one run and the start of the next belongs to the next. */
-bool
-hw_time_base_instant(const HwTimeBase *base, double column, int64_t *ns);
+bool hw_time_base_instant(const HwTimeBase *base, double column, int64_t *ns);
 
 /* Column position of an instant: always inside a run. False off the strip or in a void. After a step
  * backwards an instant may stand twice; the earlier run is given. */
-bool
-hw_time_base_column(const HwTimeBase *base, int64_t ns, double *column);
+bool hw_time_base_column(const HwTimeBase *base, int64_t ns, double *column);
 
 /* Place in the list of runs of a column position; −1 in a void or off the strip. */
-int
-hw_time_base_run_at(const HwTimeBase *base, double column);
+int hw_time_base_run_at(const HwTimeBase *base, double column);
 
-guint
-hw_time_base_get_n_runs(const HwTimeBase *base);
-const HwRun *
-hw_time_base_get_run(const HwTimeBase *base, guint index);
-guint
-hw_time_base_get_n_voids(const HwTimeBase *base);
-const HwVoid *
-hw_time_base_get_void(const HwTimeBase *base, guint index);
-guint
-hw_time_base_get_n_drops(const HwTimeBase *base);
-const HwDrop *
-hw_time_base_get_drop(const HwTimeBase *base, guint index);
+guint hw_time_base_get_n_runs(const HwTimeBase *base);
+const HwRun *hw_time_base_get_run(const HwTimeBase *base, guint index);
+guint hw_time_base_get_n_voids(const HwTimeBase *base);
+const HwVoid *hw_time_base_get_void(const HwTimeBase *base, guint index);
+guint hw_time_base_get_n_drops(const HwTimeBase *base);
+const HwDrop *hw_time_base_get_drop(const HwTimeBase *base, guint index);
 
 /* From the start of the first run to the end of the last, voids included; by the stamps. */
-int64_t
-hw_time_base_get_duration_ns(const HwTimeBase *base);
+int64_t hw_time_base_get_duration_ns(const HwTimeBase *base);
 
 /* Sentences, borrowed: voids, suspected drops, a common deviation of the rate, steps backwards, stamps too
  * close. */
-guint
-hw_time_base_get_n_problems(const HwTimeBase *base);
-const char *
-hw_time_base_get_problem(const HwTimeBase *base, guint index);
+guint hw_time_base_get_n_problems(const HwTimeBase *base);
+const char *hw_time_base_get_problem(const HwTimeBase *base, guint index);
 
 G_DEFINE_AUTOPTR_CLEANUP_FUNC(HwTimeBase, hw_time_base_unref)

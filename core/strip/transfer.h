@@ -22,22 +22,17 @@ typedef struct {
 } HwTransfer;
 
 /* Linear light, 0 … 1, of a code, 0 … 1 (clamped). Between the entries of a table it is linear. */
-double
-hw_transfer_to_light(const HwTransfer *transfer, double code);
+double hw_transfer_to_light(const HwTransfer *transfer, double code);
 
 /* The code of a light, both 0 … 1: the inverse of the above. */
-double
-hw_transfer_to_code(const HwTransfer *transfer, double light);
+double hw_transfer_to_code(const HwTransfer *transfer, double light);
 
 /* The manifest's `transfer`: a word, {"gamma": g}, or 256 rising numbers (scaled so that the last is 1);
  * NULL: unknown. */
-bool
-hw_transfer_from_json(const json_t *value, const char *where, HwTransfer *transfer, GError **error);
+bool hw_transfer_from_json(const json_t *value, const char *where, HwTransfer *transfer, GError **error);
 
 /* A word ("linear", "srgb") or "gamma:2.2", as on the command line. */
-bool
-hw_transfer_parse(const char *text, HwTransfer *transfer, GError **error);
+bool hw_transfer_parse(const char *text, HwTransfer *transfer, GError **error);
 
 /* What from_json reads back. New reference; NULL for unknown. */
-json_t *
-hw_transfer_to_json(const HwTransfer *transfer);
+json_t *hw_transfer_to_json(const HwTransfer *transfer);

@@ -20,22 +20,15 @@ typedef struct {
 /* Time runs on screen against the travel, so that riders face the way they rode and bibs can be read: later
  * stands left where they ride to the right. Unknown travel is shown as travel left. `mirrored` turns it
  * about, and the view must say so. */
-bool
-hw_view_later_left(HwSide travel, bool mirrored);
+bool hw_view_later_left(HwSide travel, bool mirrored);
 
-double
-hw_view_map_x(const HwViewMap *map, double cell);
-double
-hw_view_map_cell(const HwViewMap *map, double x_px);
-double
-hw_view_map_y(const HwViewMap *map, double row);
-double
-hw_view_map_row(const HwViewMap *map, double y_px);
+double hw_view_map_x(const HwViewMap *map, double cell);
+double hw_view_map_cell(const HwViewMap *map, double x_px);
+double hw_view_map_y(const HwViewMap *map, double row);
+double hw_view_map_row(const HwViewMap *map, double y_px);
 
 /* Axis position at the later edge. */
-double
-hw_view_map_last_cell(const HwViewMap *map);
+double hw_view_map_last_cell(const HwViewMap *map);
 
 /* The same view with the cell under x_px kept there, at another scale. */
-HwViewMap
-hw_view_map_zoomed(const HwViewMap *map, double x_px, double cells_per_px);
+HwViewMap hw_view_map_zoomed(const HwViewMap *map, double x_px, double cells_per_px);
