@@ -71,7 +71,7 @@ take_quoted(Reader *reader, GString *field, GError **error)
             if (reader->p[1] != '"')
                 break;
             reader->p++;
-        } else if (*reader->p == '\n') {
+        } else if (*reader->p == '\n' || (*reader->p == '\r' && reader->p[1] != '\n')) {
             reader->line++;
         }
         g_string_append_c(field, *reader->p);
@@ -131,12 +131,13 @@ is_blank(const HwCsvRow *row)
     return true;
 }
 
-/* The delimiter that stands most often in the first line, outside quotes. */
+/* The delimiter that stands most often in the first line that is not blank, outside quotes. */
 static char
 guess_delimiter(const char *text)
 {
     guint counts[G_N_ELEMENTS(delimiters)] = { 0 };
     bool quoted = false;
+    text += strspn(text, "\r\n");
     for (const char *p = text; *p != '\0' && (quoted || (*p != '\n' && *p != '\r')); p++) {
         if (*p == '"')
             quoted = !quoted;
@@ -172,15 +173,15 @@ static bool
 fit_row(HwCsvRow *row, guint width, const char *label, GError **error)
 {
     guint have = g_strv_length(row->fields);
-    for (guint i = width; i < have; i++) {
-        if (*row->fields[i] != '\0') {
+    for (guint i = have; i > width; i--) { /* from the end: what is left is always NULL-ended */
+        if (*row->fields[i - 1] != '\0') {
             g_set_error(error, HW_BASE_ERROR, HW_BASE_ERROR_SYNTAX,
                         "%s, line %u has %u fields where the header has %u; quote the field that holds the "
                         "delimiter.",
                         label, row->line, have, width);
             return false;
         }
-        g_clear_pointer(&row->fields[i], g_free);
+        g_clear_pointer(&row->fields[i - 1], g_free);
     }
     if (have < width) {
         row->fields = g_renew(char *, row->fields, width + 1);

@@ -6,6 +6,8 @@
 
 #include <string.h>
 
+__extension__ typedef __int128 HwWide;
+
 /* Unix time of the first second after each leap second: 1 January or 1 July. Source: IERS, as in tzdata's
  * leapseconds. */
 static const int64_t leap_ends_unix_s[] = {
@@ -251,12 +253,11 @@ hw_instant_dup_time_of_day(const HwInstant *instant, int decimals)
 bool
 hw_instant_difference(const HwInstant *later, const HwInstant *earlier, int64_t *ns)
 {
-    int64_t seconds, sum;
-    if (__builtin_sub_overflow(later->s, earlier->s, &seconds) ||
-        __builtin_mul_overflow(seconds, HW_NS_PER_S, &seconds) ||
-        __builtin_add_overflow(seconds, (int64_t)later->ns - earlier->ns, &sum))
+    /* Through 128 bits: seconds alone may pass the limit that seconds and ns together keep. */
+    HwWide sum = ((HwWide)later->s - earlier->s) * HW_NS_PER_S + later->ns - earlier->ns;
+    if (sum > INT64_MAX || sum < INT64_MIN)
         return false;
-    *ns = sum;
+    *ns = (int64_t)sum;
     return true;
 }
 

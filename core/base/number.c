@@ -111,7 +111,7 @@ hw_number_parse_decimal(const char *text, int decimals, int64_t *scaled)
 bool
 hw_number_nine_decimals(double value, int64_t *scaled)
 {
-    if (!isfinite(value) || fabs(value) >= 9e6)
+    if (!isfinite(value) || fabs(value) >= 4e6)
         return false;
     int64_t nearest = (int64_t)llround(value * 1e9);
     /* A quotient of two exact doubles is correctly rounded: equal to the text's own value only if it was that

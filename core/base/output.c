@@ -15,14 +15,15 @@
 struct HwOutput {
     char *path;
     char *beside; /* the temporary file, NULL for standard output and once committed */
-    int fd;       /* of it, or −1 */
+    int fd;       /* of it, or of the device; −1 for standard output and once closed */
     bool force;
-    GByteArray *kept; /* for standard output */
+    GByteArray *kept; /* what standard output or a device gets at the commit; NULL for a file */
 };
 
 struct HwOutputFolder {
     char *path;
     char *beside;
+    char *sign;
     bool force;
 };
 
@@ -75,17 +76,51 @@ sync_parent(const char *path)
     g_autofree char *parent = g_path_get_dirname(path);
     int fd = open(parent, O_RDONLY | O_DIRECTORY | O_CLOEXEC);
     if (fd < 0)
-        return false;
+        return errno == EACCES; /* a drop box: may be written to, not looked into */
     /* Some file systems know no fsync of folders; they keep renames in order by themselves. */
     bool synced = fsync(fd) == 0 || errno == EINVAL || errno == EROFS;
     close(fd);
     return synced;
 }
 
+/* Puts a file at a free place. Network and user-space file systems know no RENAME_NOREPLACE: there a second
+ * name does it, which is refused in one step too where the place is taken. */
 static int
-rename_new(const char *from, const char *to, bool force)
+put_new(const char *from, const char *to)
 {
-    return force ? rename(from, to) : renameat2(AT_FDCWD, from, AT_FDCWD, to, RENAME_NOREPLACE);
+    if (renameat2(AT_FDCWD, from, AT_FDCWD, to, RENAME_NOREPLACE) == 0)
+        return 0;
+    if (errno != EINVAL && errno != ENOSYS)
+        return -1;
+    if (link(from, to) == 0) {
+        unlink(from);
+        return 0;
+    }
+    if (errno == EEXIST)
+        return -1;
+    /* No second names either (FAT): looked at, then renamed. */
+    if (exists(to)) {
+        errno = EEXIST;
+        return -1;
+    }
+    return rename(from, to);
+}
+
+/* A device or pipe at the output's place is written to; a rename would put a file where it stood. */
+static bool
+open_device(HwOutput *output, GError **error)
+{
+    output->fd = open(output->path, O_WRONLY | O_CLOEXEC | O_NOCTTY);
+    if (output->fd < 0)
+        return io_error(output->path, "written", error);
+    output->kept = g_byte_array_new();
+    return true;
+}
+
+static const char *
+name_of(const HwOutput *output)
+{
+    return output->fd < 0 ? "Standard output" : output->path;
 }
 
 HwOutput *
@@ -103,6 +138,13 @@ hw_output_open(const char *path, bool force, GError **error)
         refuse_existing(path, error);
         return NULL;
     }
+    struct stat about;
+    if (stat(path, &about) == 0 && S_ISDIR(about.st_mode)) {
+        g_set_error(error, HW_BASE_ERROR, HW_BASE_ERROR_EXISTS, "%s is a folder; name a file.", path);
+        return NULL;
+    }
+    if (stat(path, &about) == 0 && !S_ISREG(about.st_mode))
+        return open_device(output, error) ? g_steal_pointer(&output) : NULL;
     output->beside = g_strconcat(path, ".XXXXXX", NULL);
     output->fd = g_mkstemp_full(output->beside, O_WRONLY | O_CLOEXEC, 0666);
     if (output->fd < 0) {
@@ -119,7 +161,7 @@ hw_output_write(HwOutput *output, const void *data, size_t size, GError **error)
     if (output->kept != NULL) {
         if (size > G_MAXUINT - output->kept->len) {
             errno = EFBIG;
-            return io_error("Standard output", "written", error);
+            return io_error(name_of(output), "written", error);
         }
         g_byte_array_append(output->kept, data, (guint)size);
         return true;
@@ -131,8 +173,9 @@ bool
 hw_output_commit(HwOutput *output, GError **error)
 {
     if (output->kept != NULL)
-        return write_all(STDOUT_FILENO, output->kept->data, output->kept->len) ||
-               io_error("Standard output", "written", error);
+        return write_all(output->fd >= 0 ? output->fd : STDOUT_FILENO, output->kept->data,
+                         output->kept->len) ||
+               io_error(name_of(output), "written", error);
 
     bool flushed = fsync(output->fd) == 0;
     int saved = errno;
@@ -142,7 +185,7 @@ hw_output_commit(HwOutput *output, GError **error)
         errno = saved;
     if (!flushed || !closed)
         return io_error(output->path, "written", error);
-    if (rename_new(output->beside, output->path, output->force) != 0)
+    if ((output->force ? rename(output->beside, output->path) : put_new(output->beside, output->path)) != 0)
         return errno == EEXIST ? refuse_existing(output->path, error)
                                : io_error(output->path, "written", error);
     g_clear_pointer(&output->beside, g_free);
@@ -197,6 +240,31 @@ is_replaceable(const char *path, const char *sign)
     return folder != NULL && g_dir_read_name(folder) == NULL;
 }
 
+static bool
+refuse_foreign(const char *path, const char *sign, GError **error)
+{
+    g_set_error(error, HW_BASE_ERROR, HW_BASE_ERROR_EXISTS,
+                "%s is there and holds no %s, so it is not replaced even with --force; name another.", path,
+                sign);
+    return false;
+}
+
+/* Renames the folder to its free place. Where the file system knows no RENAME_NOREPLACE the place is looked
+ * at first; a folder with anything in it can't be lost even so, since rename replaces empty ones only. */
+static int
+put_new_folder(const char *from, const char *to)
+{
+    if (renameat2(AT_FDCWD, from, AT_FDCWD, to, RENAME_NOREPLACE) == 0)
+        return 0;
+    if (errno != EINVAL && errno != ENOSYS)
+        return -1;
+    if (exists(to)) {
+        errno = EEXIST;
+        return -1;
+    }
+    return rename(from, to);
+}
+
 HwOutputFolder *
 hw_output_folder_open(const char *path, const char *sign, bool force, GError **error)
 {
@@ -208,9 +276,7 @@ hw_output_folder_open(const char *path, const char *sign, bool force, GError **e
         return NULL;
     }
     if (exists(trimmed) && !is_replaceable(trimmed, sign)) {
-        g_set_error(error, HW_BASE_ERROR, HW_BASE_ERROR_EXISTS,
-                    "%s is there and holds no %s, so it is not replaced even with --force; name another.",
-                    trimmed, sign);
+        refuse_foreign(trimmed, sign, error);
         return NULL;
     }
     g_autofree char *beside = g_strconcat(trimmed, ".XXXXXX", NULL);
@@ -221,6 +287,7 @@ hw_output_folder_open(const char *path, const char *sign, bool force, GError **e
     HwOutputFolder *folder = g_new0(HwOutputFolder, 1);
     folder->path = g_steal_pointer(&trimmed);
     folder->beside = g_steal_pointer(&beside);
+    folder->sign = g_strdup(sign);
     folder->force = force;
     return folder;
 }
@@ -236,11 +303,23 @@ hw_output_folder_commit(HwOutputFolder *folder, GError **error)
 {
     sync_parent(folder->beside);
     bool replace = folder->force && exists(folder->path);
-    unsigned how = replace ? RENAME_EXCHANGE : RENAME_NOREPLACE;
-    if (renameat2(AT_FDCWD, folder->beside, AT_FDCWD, folder->path, how) != 0)
+    if (!replace && put_new_folder(folder->beside, folder->path) != 0)
         return errno == EEXIST ? refuse_existing(folder->path, error) : io_error(folder->path, "made", error);
-    if (replace)
+    /* Looked at again: since it was opened another folder may have come to its place. */
+    if (replace && !is_replaceable(folder->path, folder->sign))
+        return refuse_foreign(folder->path, folder->sign, error);
+    if (replace) {
+        if (renameat2(AT_FDCWD, folder->beside, AT_FDCWD, folder->path, RENAME_EXCHANGE) != 0) {
+            if (errno != EINVAL && errno != ENOSYS)
+                return io_error(folder->path, "made", error);
+            g_set_error(
+                error, HW_BASE_ERROR, HW_BASE_ERROR_IO,
+                "%s lies on a file system that cannot exchange two folders in one step; name another.",
+                folder->path);
+            return false;
+        }
         remove_tree(folder->beside);
+    }
     g_clear_pointer(&folder->beside, g_free);
     return sync_parent(folder->path) || io_error(folder->path, "kept for sure", error);
 }
@@ -254,5 +333,6 @@ hw_output_folder_free(HwOutputFolder *folder)
         remove_tree(folder->beside);
     g_free(folder->beside);
     g_free(folder->path);
+    g_free(folder->sign);
     g_free(folder);
 }

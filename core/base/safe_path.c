@@ -10,10 +10,30 @@
 
 enum { MAX_NAME_BYTES = 4095 };
 
+/* Letters of any script stay as they are; what could move a terminal's cursor, and bytes that are no UTF-8,
+ * are written as escapes. */
+static char *
+dup_printable(const char *name)
+{
+    GString *shown = g_string_new(NULL);
+    for (const char *p = name; *p != '\0';) {
+        gunichar c = g_utf8_get_char_validated(p, -1);
+        bool is_text = c != (gunichar)-1 && c != (gunichar)-2;
+        gsize bytes = is_text ? (gsize)(g_utf8_next_char(p) - p) : 1;
+        if (is_text && g_unichar_isprint(c))
+            g_string_append_len(shown, p, (gssize)bytes);
+        else
+            for (gsize i = 0; i < bytes; i++)
+                g_string_append_printf(shown, "\\x%02x", (guchar)p[i]);
+        p += bytes;
+    }
+    return g_string_free(shown, FALSE);
+}
+
 static bool
 refuse(const char *where, const char *name, const char *reason, GError **error)
 {
-    g_autofree char *shown = g_strescape(name, NULL);
+    g_autofree char *shown = dup_printable(name);
     g_set_error(error, HW_BASE_ERROR, HW_BASE_ERROR_UNSAFE, "%s: the file name “%s” %s; rename the file.",
                 where, shown, reason);
     return false;
@@ -84,8 +104,14 @@ set_open_error(const char *where, const char *name, GError **error)
         g_set_error(error, HW_BASE_ERROR, HW_BASE_ERROR_NOT_FOUND,
                     "%s: the file “%s” is missing; put it back.", where, name);
     else if (code == ELOOP || code == ENOTDIR)
+        g_set_error(
+            error, HW_BASE_ERROR, HW_BASE_ERROR_UNSAFE,
+            "%s: “%s” leads through a link, or through a file as if it were a folder; put the file itself "
+            "there.",
+            where, name);
+    else if (code == ENXIO) /* a socket */
         g_set_error(error, HW_BASE_ERROR, HW_BASE_ERROR_UNSAFE,
-                    "%s: “%s” leads through a link; put the file itself there.", where, name);
+                    "%s: “%s” is not a regular file; put the file itself there.", where, name);
     else
         g_set_error(error, HW_BASE_ERROR, HW_BASE_ERROR_IO, "%s: “%s” cannot be opened: %s.", where, name,
                     g_strerror(code));
