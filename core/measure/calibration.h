@@ -23,15 +23,12 @@ typedef struct {
 } HwCalibration;
 
 /* Reads a calibration file (owned by the caller). */
-HwCalibration *
-hw_calibration_read(const char *path, GError **error);
-void
-hw_calibration_free(HwCalibration *calibration);
+HwCalibration *hw_calibration_read(const char *path, GError **error);
+void hw_calibration_free(HwCalibration *calibration);
 
 /* True where it holds for the recording; else HW_MEASURE_ERROR_OTHER_SETUP names what differs, and by how
  * much. */
-bool
-hw_calibration_check(const HwCalibration *calibration, const HwRecording *recording, const char *path,
-                     GError **error);
+bool hw_calibration_check(const HwCalibration *calibration, const HwRecording *recording, const char *path,
+                          GError **error);
 
 G_DEFINE_AUTOPTR_CLEANUP_FUNC(HwCalibration, hw_calibration_free)

@@ -72,7 +72,7 @@ hw_gap_between(const HwLead *ahead, const HwLead *behind, const HwSetup *setup, 
     double worst_ns = size_ns - worst_bias_ns(ahead, behind, size_ns, setup);
     if (gap.p_order_wrong > p_limit)
         gap.separated = HW_SEPARATED_NO;
-    else if (worst_ns <= 0 || p_below_zero(worst_ns, gap.u_gap_ns) > p_limit)
+    else if (isnan(gap.u_gap_ns) || worst_ns <= 0 || p_below_zero(worst_ns, gap.u_gap_ns) > p_limit)
         gap.separated = HW_SEPARATED_NOT_ESTABLISHED;
     else
         gap.separated = HW_SEPARATED_YES;

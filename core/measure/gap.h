@@ -27,14 +27,12 @@ typedef struct {
 } HwSetup;
 
 /* The stated worst cases, nothing measured. */
-HwSetup
-hw_setup_unmeasured(void);
+HwSetup hw_setup_unmeasured(void);
 
 typedef enum { HW_SEPARATED_YES, HW_SEPARATED_NO, HW_SEPARATED_NOT_ESTABLISHED } HwSeparated;
 
 /* "yes", "no", "not established": as in files. */
-const char *
-hw_separated_get_word(HwSeparated separated);
+const char *hw_separated_get_word(HwSeparated separated);
 
 typedef struct {
     int64_t gap_ns;       /* behind − ahead; ≥ 0 where the order is right */
@@ -49,10 +47,8 @@ typedef struct {
  * (0.01 where a rule set names none). Readings are taken as independent and normal (JCGM 100:2008, 5.1.2).
  * YES: p ≤ limit, and still so when rate and alignment, where never measured, stand at their worst; NO: p >
  * limit for the readings alone; NOT_ESTABLISHED: only the worst cases prevent it. */
-HwGap
-hw_gap_between(const HwLead *ahead, const HwLead *behind, const HwSetup *setup, double p_limit);
+HwGap hw_gap_between(const HwLead *ahead, const HwLead *behind, const HwSetup *setup, double p_limit);
 
 /* Standard uncertainty in columns of a marker set by eye at 1:1 or above, and the time of one column:
  * half-width of one column, rectangular (GUM 4.3.7): 1/√12. */
-double
-hw_u_by_eye_ns(double period_ns);
+double hw_u_by_eye_ns(double period_ns);

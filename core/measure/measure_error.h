@@ -10,5 +10,4 @@ typedef enum {
 } HwMeasureError;
 
 #define HW_MEASURE_ERROR (hw_measure_error_quark())
-GQuark
-hw_measure_error_quark(void);
+GQuark hw_measure_error_quark(void);

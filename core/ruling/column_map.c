@@ -21,9 +21,9 @@ static const struct {
     { HW_FIELD_NAME, "name rider ridername fullname lastname surname familyname athlete "
                      "nom coureur nomprenom nometprenom "
                      "fahrer nachname familienname namevorname fahrername "
-                     "nombre apellido apellidos apellidosynombre corredor nombreyapellidos "
+                     "apellido apellidos apellidosynombre corredor nombreyapellidos "
                      "cognome atleta corridore cognomenome cognomeenome nominativo" },
-    { HW_FIELD_FIRST_NAME, "firstname givenname forename prenom vorname nombredepila" },
+    { HW_FIELD_FIRST_NAME, "firstname givenname forename prenom vorname nombre nome" },
     { HW_FIELD_TEAM,
       "team teamname club equipe equipeclub nomequipe mannschaft verein equipo squadra societa "
       "teamclub gruppo" },
