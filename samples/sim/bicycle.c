@@ -125,6 +125,22 @@ add_spoke(SimPoint hub, double inner, double outer, double turn, double r, doubl
     sim_shape_list_add(list, s);
 }
 
+/* Three rows of light strokes on a deep rim; they turn with the wheel, so the scan bends them. */
+static void
+add_rim_print(const SimBicycle *b, SimPoint hub, double turn, SimShapeList *list)
+{
+    double r = b->diameter_m / 2, middle = r - .026 - b->rim_m * .5, half = b->rim_m * .22;
+    for (int i = 0; i < 18; i++) {
+        double a = turn + i / 6 * 2.0943951 + i % 6 * .085, su = -sin(a), sh = cos(a);
+        SimPoint p = { hub.u + (middle - half) * su, hub.h + (middle - half) * sh };
+        SimPoint q = { hub.u + (middle + half) * su, hub.h + (middle + half) * sh };
+        SimShape s = sim_shape_capsule(p, .005, q, .005, flat(.42f, .42f, .42f));
+        s.stretch = 1 / fmax(fabs(1 + middle * sh / r), .2);
+        s.shadow = 0;
+        sim_shape_list_add(list, s);
+    }
+}
+
 static void
 add_wheel(const SimBicycle *b, SimPoint hub, double turn, int spokes, bool disc, SimShapeList *list)
 {
@@ -132,6 +148,8 @@ add_wheel(const SimBicycle *b, SimPoint hub, double turn, int spokes, bool disc,
     SimPaint rubber = flat(.016f, .016f, .017f);
     sim_shape_list_add(list, sim_shape_ring(hub, r, r - tyre * .62, rubber));
     SimPaint side = flat(.030f, .027f, .024f);
+    if ((b->seed & 7u) == 3)
+        side.colour = (SimColour){ .22f, .13f, .06f };
     sim_shape_list_add(list, sim_shape_ring(hub, r - tyre * .5, r - tyre, side));
     SimPaint rim = gloss(b->rim, .12f);
     rim.grain = .05f;
@@ -146,6 +164,8 @@ add_wheel(const SimBicycle *b, SimPoint hub, double turn, int spokes, bool disc,
     }
     sim_shape_list_add(list,
                        sim_shape_ellipse(hub, .021, .021, 0, gloss((SimColour){ .09f, .09f, .1f }, .4f)));
+    if (b->rim_m > .04 && (b->seed >> 4 & 1u))
+        add_rim_print(b, hub, turn, list);
     sim_shape_list_add(list, sim_shape_ring(hub, r - tyre * .7, r - tyre - b->rim_m, rim));
     double inner = r - tyre - b->rim_m + .004;
     SimPaint wire = flat(.07f, .07f, .072f);
@@ -210,6 +230,14 @@ sim_bicycle_add_frame(const SimBicycle *b, double crank_rad, double wheel_rad, S
                              .band_from = .85f,
                              .band_to = 1.01f };
         sim_shape_list_add(list, sim_shape_capsule(low, .035, high, .034, plastic));
+    }
+    for (int i = 0; i < 6; i++) {
+        double q = .40 + .045 * i;
+        SimPoint mid = { p.bottom_bracket.u + (p.crown.u - p.bottom_bracket.u) * q,
+                         p.bottom_bracket.h + (p.crown.h - p.bottom_bracket.h) * q };
+        sim_shape_list_add(list,
+                           sim_shape_capsule(shifted(mid, -.003, -.009), .0045, shifted(mid, .003, .010),
+                                             .0045, flat(b->frame.r, b->frame.g, b->frame.b)));
     }
     sim_shape_list_add(list, sim_shape_capsule(p.bottom_bracket, .026 * aero, shifted(p.crown, .004, .012),
                                                .024 * aero, marked));

@@ -30,7 +30,10 @@ struct SimCamera {
     const SimScenario *scenario;
     SimScene scene;
     GArray *crossings;
-    double *fall; /* of every subrow */
+    double *fall; /* of every subrow; likewise what stands still there */
+    SimColour *still;
+    double *ground_y;
+    bool *moves;
     Active *active;
     int active_count;
     float *blurred;
@@ -79,8 +82,14 @@ sim_camera_new(const SimScenario *scenario)
     add_crossings(k);
     k->active = g_new0(Active, ACTIVE_MAX);
     k->fall = g_new(double, scenario->rows *SUBROWS);
-    for (int i = 0; i < scenario->rows * SUBROWS; i++)
+    int subrows = scenario->rows * SUBROWS;
+    k->still = g_new(SimColour, subrows);
+    k->ground_y = g_new(double, subrows);
+    k->moves = g_new(bool, subrows);
+    for (int i = 0; i < subrows; i++) {
         k->fall[i] = sim_scene_fall(&k->scene, (i + 0.5) / SUBROWS);
+        k->still[i] = sim_scene_background(&k->scene, k->fall[i], 0, &k->ground_y[i], &k->moves[i]);
+    }
     double distance = scenario->distance_m + scenario->road_m / 2;
     k->lens_rows = scenario->lens_mm * 1e-3 * scenario->focal_rows / distance;
     k->blurred = g_new(float, scenario->rows * 3);
@@ -97,6 +106,9 @@ sim_camera_free(SimCamera *k)
     g_array_unref(k->crossings);
     g_free(k->active);
     g_free(k->fall);
+    g_free(k->still);
+    g_free(k->ground_y);
+    g_free(k->moves);
     g_free(k->blurred);
     g_free(k);
 }
@@ -333,8 +345,11 @@ sim_camera_expose(SimCamera *k, int64_t scan, float *light)
             }
             if (open.left <= 1e-7)
                 continue;
-            double y;
-            SimColour back = sim_scene_background(&k->scene, fall, middle, &y);
+            int at = row * SUBROWS + sub;
+            double y = k->ground_y[at];
+            bool moves;
+            SimColour back =
+                k->moves[at] ? sim_scene_background(&k->scene, fall, middle, &y, &moves) : k->still[at];
             double lit = isnan(y) ? 1 : 1 - (s->indoors ? .35 : .62) * shadow_at(k, y);
             add_light(sum, back, open.left * lit);
         }

@@ -48,6 +48,7 @@ static void
 place_trunk(const SimRider *r, const SimBicyclePoints *p, double bob, double shift, Trunk *t)
 {
     double s = r->size;
+    *t = (Trunk){ 0 };
     switch (r->posture) {
     case SIM_POSTURE_SPRINT:
         t->hip = shifted(p->saddle, -.09, .085 + bob);
@@ -163,6 +164,9 @@ add_head(const SimRider *r, const Trunk *t, SimShapeList *list)
     shell.gloss = .35f;
     SimPaint vent = { .kind = SIM_PAINT_FLAT, .colour = { .015f, .015f, .015f } };
     SimPaint bare = cloth(r, r->skin, .05f);
+    static const SimColour LENS[] = {
+        { .03f, .02f, .04f }, { .30f, .10f, .02f }, { .02f, .05f, .12f }, { .04f, .04f, .04f }
+    };
     SimPoint brow = shifted(h, -.095 * s, .005), nape = shifted(h, .11 * s, .035);
     if (r->posture == SIM_POSTURE_EXTENDED) {
         SimPaint visor = { .kind = SIM_PAINT_ROUND, .colour = { .03f, .035f, .05f }, .gloss = .6f };
@@ -173,13 +177,18 @@ add_head(const SimRider *r, const Trunk *t, SimShapeList *list)
                            sim_shape_capsule(shifted(h, .03, .045), .062, shifted(h, .21, .035), .02, shell));
     } else {
         sim_shape_list_add(
-            list, sim_shape_capsule(
-                      shifted(brow, .012, -.032), .013, shifted(brow, .075, -.025), .010,
-                      (SimPaint){ .kind = SIM_PAINT_ROUND, .colour = { .03f, .02f, .04f }, .gloss = .5f }));
-        for (int i = 0; i < 3; i++)
-            sim_shape_list_add(list,
-                               sim_shape_capsule(shifted(h, -.065 + .055 * i, .062 + .008 * (i == 1)), .006,
-                                                 shifted(h, -.035 + .062 * i, .070 - .004 * i), .007, vent));
+            list,
+            sim_shape_capsule(
+                shifted(brow, .012, -.032), .013, shifted(brow, .075, -.025), .010,
+                (SimPaint){ .kind = SIM_PAINT_ROUND, .colour = LENS[r->seed >> 9 & 3u], .gloss = .6f }));
+        int vents = 2 + (int)(r->seed >> 5 & 1u);
+        double rise = tilt + .10;
+        for (int i = 0; i < 2 * vents; i++) {
+            double x = -.085 + .19 * (i / 2) / vents + .02 * (i & 1), y = i & 1 ? .045 : .085;
+            SimPoint a = shifted(h, x, y - x * rise),
+                     b = shifted(h, x + .15 / vents, y - (x + .15 / vents) * rise);
+            sim_shape_list_add(list, sim_shape_capsule(a, .005, b, .010, vent));
+        }
         sim_shape_list_add(list, sim_shape_ellipse(shifted(h, .01, .048), .135 * s, .074 * s, tilt, shell));
         sim_shape_list_add(list, sim_shape_capsule(shifted(h, -.06, .03), .052, nape, .045, shell));
         sim_shape_list_add(
@@ -198,7 +207,7 @@ add_number(const SimRider *r, const Trunk *t, SimShapeList *list)
     SimPoint back = { du / d, dh / d }, up = { -back.h, back.u };
     double way = r->read_backwards ? -1 : 1;
     SimPanel p = {
-        .middle = { t->hip.u - back.u * .115 + up.u * .035, t->hip.h - back.h * .115 + up.h * .035 },
+        .middle = { t->hip.u - back.u * .165 + up.u * .052, t->hip.h - back.h * .165 + up.h * .052 },
         .reading = { back.u * way, back.h * way },
         .up = up,
         .width_m = .175,
@@ -225,11 +234,30 @@ add_frame_plate(const SimRider *r, const SimBicyclePoints *b, SimShapeList *list
     list->count += sim_lettering_panel(&p, r->bib, list->shape + list->count, SIM_SHAPES_MAX - list->count);
 }
 
+/* What is printed on a jersey, too small to be read: a row of strokes along the flank, and the seam of the
+ * pockets. */
+static void
+add_print(const SimRider *r, const Trunk *t, SimShapeList *list)
+{
+    double du = t->hip.u - t->shoulder.u, dh = t->hip.h - t->shoulder.h, d = hypot(du, dh);
+    SimPoint back = { du / d, dh / d }, up = { -back.h, back.u };
+    SimPaint ink = cloth(r, r->jersey_band, .1f);
+    double x = .05 + .01 * (r->seed & 3u);
+    for (int i = 0; i < 5; i++) {
+        double low = -.020 + .004 * ((r->seed >> (6 + i)) & 3u), high = .012;
+        SimPoint a = { t->shoulder.u + back.u * x + up.u * low, t->shoulder.h + back.h * x + up.h * low };
+        SimPoint b = { a.u + up.u * (high - low) + back.u * .008, a.h + up.h * (high - low) + back.h * .008 };
+        sim_shape_list_add(list, sim_shape_capsule(a, .0045, b, .0045, ink));
+        x += .017;
+    }
+}
+
 static void
 add_trunk(const SimRider *r, const Trunk *t, SimShapeList *list)
 {
     double s = r->size;
-    SimPaint top = cloth(r, r->jersey, .14f), seat = cloth(r, r->shorts, .12f);
+    add_print(r, t, list);
+    SimPaint top = cloth(r, r->jersey, .20f), seat = cloth(r, r->shorts, .12f);
     top.band = r->jersey_band;
     top.band_from = r->band_from;
     top.band_to = r->band_to;

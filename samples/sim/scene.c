@@ -116,27 +116,35 @@ barrier(const SimScene *s, double h)
     return times(cloth, .93 + .12 * sim_random_pattern(23, h * 40, 0));
 }
 
+/* People behind the barrier: clothes one above the other, that sway, and pass slowly into others. */
 static SimColour
 crowd(double h, double t)
 {
-    static const SimColour WEAR[] = { { .05f, .06f, .10f }, { .28f, .06f, .05f }, { .34f, .33f, .30f },
-                                      { .06f, .12f, .09f }, { .32f, .22f, .15f }, { .04f, .04f, .045f } };
-    double lean = .05 * sim_random_pattern(31, t * .9, 0);
-    double place = (h + lean) * 4.2;
+    static const SimColour WEAR[] = {
+        { .05f, .06f, .10f }, { .22f, .06f, .05f }, { .34f, .33f, .30f },
+        { .06f, .12f, .09f }, { .30f, .20f, .14f }, { .04f, .04f, .045f },
+    };
+    double sway = .05 * sim_random_pattern(31, t * .9, 0);
+    double place = (h + sway) * 4.2;
     int i = (int)floor(place);
-    SimColour c = WEAR[(unsigned)(i * 7 + 3 + (int)floor(t * .35 + i * .37)) % 6];
-    if (h > 1.48)
-        c = (SimColour){ .30f, .19f, .13f };
-    return times(c, .75 + .35 * sim_random_pattern(32, (h + lean) * 23, t * 1.6) +
-                        .12 * sim_random_pattern(33, h * 60, t * 5));
+    /* Somebody else comes to stand there now and then, within a tenth of a second or so. */
+    double turn = t * .35 + i * .37, before = floor(turn), pass = (turn - before - .94) / .06;
+    unsigned which = (unsigned)(i * 7 + 3 + (int)before);
+    SimColour c = mixed(WEAR[which % 6], WEAR[(which + 1) % 6], pass > 0 ? pass * pass * (3 - 2 * pass) : 0);
+    if (h > 1.42)
+        c = mixed(c, (SimColour){ .30f, .19f, .13f }, fmin((h - 1.42) / .06, 1));
+    double folds =
+        .35 * sim_random_pattern(32, (h + sway) * 23, t * 1.6) + .14 * sim_random_pattern(33, h * 60, t * 5);
+    return times(c, .75 + folds);
 }
 
 SimColour
-sim_scene_background(const SimScene *s, double fall, double time_s, double *ground_y)
+sim_scene_background(const SimScene *s, double fall, double time_s, double *ground_y, bool *moves)
 {
     const SimScenario *c = s->scenario;
     double edge = c->road_m + .35, y = fall > 1e-9 ? c->camera_height_m / fall - c->distance_m : HUGE_VAL;
     *ground_y = NAN;
+    *moves = false;
     if (y < edge) {
         *ground_y = y;
         return ground(s, y);
@@ -148,13 +156,15 @@ sim_scene_background(const SimScene *s, double fall, double time_s, double *grou
             return times((SimColour){ .36f, .255f, .15f }, 1 + .10 * sim_random_pattern(41, h * 50, 0));
         if (h < 1.25)
             return (SimColour){ .40f, .41f, .43f };
-        return times((SimColour){ .030f, .032f, .042f }, 1 + .5 * sim_random_pattern(42, h * 7, time_s * .4));
+        return times((SimColour){ .030f, .032f, .042f }, 1 + .5 * sim_random_pattern(42, h * 7, 0));
     }
     if (h < 1.05)
         return barrier(s, h);
     double back = sim_scene_height(s, fall, edge + .7);
-    if (back < 1.66)
+    if (back < 1.66) {
+        *moves = true;
         return crowd(back, time_s);
+    }
     double wall = sim_scene_height(s, fall, edge + 6);
     return times((SimColour){ .16f, .145f, .125f },
                  1 + .30 * sim_random_pattern(43, wall * 3, 0) + .18 * sim_random_pattern(44, wall * 22, 0));

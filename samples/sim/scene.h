@@ -25,8 +25,10 @@ double sim_scene_row(const SimScene *s, double y_m, double h_m);
 double sim_scene_plane(const SimScene *s, double y_m, double h_m);
 /* Width of what one column covers along the travel at a distance. */
 double sim_scene_slit(const SimScene *s, double y_m);
-/* What stands still behind everything, in light; time only moves spectators. ground_y: where the sight meets
- * the road, NAN where it doesn't. */
-SimColour sim_scene_background(const SimScene *s, double fall, double time_s, double *ground_y);
+/*
+ * What stands still behind everything, in light. ground_y: where the sight meets the road, NAN where it
+ * doesn't. moves: whether another time gives another colour, as where spectators stand.
+ */
+SimColour sim_scene_background(const SimScene *s, double fall, double time_s, double *ground_y, bool *moves);
 /* Share of an exposure in which the lamp burns. */
 double sim_scene_lamp(const SimScene *s, double from_s, double to_s);
