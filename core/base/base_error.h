@@ -15,5 +15,4 @@ typedef enum {
 } HwBaseError;
 
 #define HW_BASE_ERROR (hw_base_error_quark())
-GQuark
-hw_base_error_quark(void);
+GQuark hw_base_error_quark(void);
