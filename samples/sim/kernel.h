@@ -6,7 +6,7 @@
  */
 #pragma once
 
-enum { SIM_KERNEL_STEPS = 256 };
+enum { SIM_KERNEL_STEPS = 512 };
 
 typedef struct {
     double half_m;                    /* beyond this distance the kernel is nothing */
