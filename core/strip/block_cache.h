@@ -20,8 +20,9 @@ HwBlockCache *hw_block_cache_ref(HwBlockCache *cache);
 void hw_block_cache_unref(HwBlockCache *cache);
 
 /* The raster of a key, made if it is not there (new reference). Errors of the maker are kept and given again,
- * except G_IO_ERROR_CANCELLED. Least recently used rasters leave when the limit is passed; one larger than
- * the limit is given but not kept. */
+ * except those of the domain G_IO_ERROR (cancelled, no memory): whoever waited for such a maker tries for
+ * itself. Least recently used rasters leave when the limit is passed; one larger than the limit is given but
+ * not kept. */
 HwRaster *hw_block_cache_get(HwBlockCache *cache, const char *key, HwBlockMaker make, gpointer user_data,
                              GError **error);
 

@@ -41,14 +41,20 @@ bool hw_strip_locate(HwStrip *strip, double column, guint *block, double *column
 /* Why a block cannot be read, or NULL; borrowed. */
 const char *hw_strip_get_damage(HwStrip *strip, guint block);
 
-/* A block's samples (new reference). The file's digest is checked when it is first read.
- * HW_STRIP_ERROR_DAMAGED where it cannot be read: the reason. */
+/* A block's samples (new reference). The file's digest is checked whenever it is read, so at each decode.
+ * HW_STRIP_ERROR_DAMAGED where it cannot be read: the reason. G_IO_ERROR_CANCELLED, or G_IO_ERROR_FAILED
+ * where memory fails: nothing is remembered then. */
 HwRaster *hw_strip_get_raster(HwStrip *strip, guint block, HwPlane plane, GCancellable *cancellable,
                               GError **error);
 
-/* The colour of a block reduced by 16 columns and 4 rows (means, BGRx in 4 channels of 8 bits), kept in the
- * cache: what an overview is made of. As above. */
+/* As above but only if the cache holds it: NULL without an error where it does not. */
+HwRaster *hw_strip_peek_raster(HwStrip *strip, guint block, HwPlane plane);
+
+/* The colour of a block reduced by 16 columns and 4 rows (means rounded to 8 bits; red, green, blue and 255;
+ * alpha over black; the last cells of a row or column may stand for fewer), kept in the cache: what an
+ * overview is made of. The block itself is not kept for it. As above. */
 HwRaster *hw_strip_get_reduced(HwStrip *strip, guint block, GCancellable *cancellable, GError **error);
+HwRaster *hw_strip_peek_reduced(HwStrip *strip, guint block);
 #define HW_REDUCED_COLUMNS 16
 #define HW_REDUCED_ROWS 4
 
@@ -57,8 +63,12 @@ HwRaster *hw_strip_get_reduced(HwStrip *strip, guint block, GCancellable *cancel
 bool hw_strip_check_block(HwStrip *strip, guint block, guint *notes, GCancellable *cancellable,
                           GError **error);
 
-/* How many blocks were decoded through this strip's cache. */
+/* How many times a block was decoded for this strip and those it was refreshed from or to. */
 guint hw_strip_get_n_decoded(HwStrip *strip);
+
+/* Why a block was found unreadable, by this strip or any it was refreshed from or to, NULL where it was not.
+ * Owned by the caller. */
+char *hw_strip_dup_found_damage(HwStrip *strip, guint block);
 
 /* True where every block is readable as far as known and the camera has finished writing. */
 bool hw_strip_is_whole(HwStrip *strip);
