@@ -37,6 +37,7 @@ struct SimCamera {
     Active *active;
     int active_count;
     float *blurred;
+    float *answer; /* of every row's cell, near 1 */
     double lens_rows;
 };
 
@@ -93,6 +94,11 @@ sim_camera_new(const SimScenario *scenario)
     double distance = scenario->distance_m + scenario->road_m / 2;
     k->lens_rows = scenario->lens_mm * 1e-3 * scenario->focal_rows / distance;
     k->blurred = g_new(float, scenario->rows * 3);
+    k->answer = g_new(float, scenario->rows);
+    SimRandom rnd;
+    sim_random_init(&rnd, scenario->seed, 17);
+    for (int i = 0; i < scenario->rows; i++)
+        k->answer[i] = scenario->well_electrons > 0 ? (float)(1 + .006 * sim_random_normal(&rnd)) : 1;
     return k;
 }
 
@@ -110,6 +116,7 @@ sim_camera_free(SimCamera *k)
     g_free(k->ground_y);
     g_free(k->moves);
     g_free(k->blurred);
+    g_free(k->answer);
     g_free(k);
 }
 
@@ -374,9 +381,10 @@ sim_camera_read(SimCamera *k, int64_t scan, const float *light, uint16_t *sample
     sim_random_init(&rnd, s->seed, (uint64_t)scan + 1000003);
     gboolean srgb = strcmp(s->transfer, "srgb") == 0;
     double top = s->bits == 16 ? 65535 : 255;
-    int n = s->rows * sim_camera_channels(k);
+    int channels = sim_camera_channels(k), n = s->rows * channels;
     for (int i = 0; i < n; i++) {
-        double v = light[i];
+        /* No two cells of the slit answer quite alike. */
+        double v = light[i] * k->answer[i / channels];
         if (s->well_electrons > 0) {
             double electrons = fmax(v, 0) * s->well_electrons + s->read_electrons * s->read_electrons;
             v += sim_random_normal(&rnd) * sqrt(electrons) / s->well_electrons;

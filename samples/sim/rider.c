@@ -257,7 +257,7 @@ add_trunk(const SimRider *r, const Trunk *t, SimShapeList *list)
 {
     double s = r->size;
     add_print(r, t, list);
-    SimPaint top = cloth(r, r->jersey, .20f), seat = cloth(r, r->shorts, .12f);
+    SimPaint top = cloth(r, r->jersey, .26f), seat = cloth(r, r->shorts, .12f);
     top.band = r->jersey_band;
     top.band_from = r->band_from;
     top.band_to = r->band_to;

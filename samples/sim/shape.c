@@ -230,9 +230,12 @@ sim_shape_colour(const SimShape *s, double u, double h)
             c.b += g;
         }
     }
-    if (p->grain > 0)
-        lit *= 1 + p->grain * (0.7 * sim_random_pattern(p->seed, u * 28, h * 34) +
-                               0.5 * sim_random_pattern(p->seed + 7, u * 75, h * 60));
+    if (p->grain > 0) {
+        /* Folds run across the limb and slantwise; fine dirt over all. */
+        double folds = sim_random_pattern(p->seed, u * 31 + h * 17, h * 23 - u * 9) * 0.8 +
+                       sim_random_pattern(p->seed + 7, u * 83 - h * 40, h * 66 + u * 21) * 0.5;
+        lit *= 1 + p->grain * (folds + 0.35 * sim_random_pattern(p->seed + 3, u * 260, h * 240));
+    }
     float f = (float)(lit > 0 ? lit : 0);
     return (SimColour){ c.r * f, c.g * f, c.b * f };
 }

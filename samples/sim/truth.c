@@ -104,7 +104,8 @@ add_marker(GString *s, const SimScenario *sc, const SimRecorder *recorder, const
     add_field(s, sc->camera);
     add_field(s, "truth");
     add_field(s, "read");
-    add_field(s, "tyre");
+    /* Who can see next to nothing of the wheel must infer it. */
+    add_field(s, t->hidden_deg >= 170 ? "inferred" : "tyre");
     add_field(s, sim_recorder_get_identity(recorder));
     g_string_append_c(s, '\n');
 }
