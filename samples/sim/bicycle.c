@@ -47,6 +47,7 @@ sim_bicycle_points(const SimBicycle *b, SimBicyclePoints *p)
     double drop = b->track ? 0.055 : 0.070, stay = b->track ? 0.395 : 0.408;
     p->bottom_bracket = (SimPoint){ p->rear_hub.u - sqrt(stay * stay - drop * drop), r - drop };
     p->saddle = shifted(p->bottom_bracket, b->saddle_m * cos(seat), b->saddle_m * sin(seat));
+    p->nose = shifted(p->saddle, -.13, 0);
     /* The steering axis passes 45 mm behind the hub. */
     SimPoint foot = shifted(p->front_hub, 0.045 * sin(head), -0.045 * cos(head));
     p->crown = shifted(foot, 0.368 * cos(head), 0.368 * sin(head));
@@ -216,8 +217,8 @@ sim_bicycle_add_frame(const SimBicycle *b, double crank_rad, double wheel_rad, S
     double aero = b->time_trial ? 1.5 : 1;
 
     add_bars(b, &p, list);
-    SimPoint nose = shifted(p.saddle, -.15, .0), tail = shifted(p.saddle, .11, .012);
-    sim_shape_list_add(list, sim_shape_capsule(nose, .013, tail, .024, flat(.02f, .02f, .02f)));
+    SimPoint tail = shifted(p.saddle, .11, .012);
+    sim_shape_list_add(list, sim_shape_capsule(p.nose, .013, tail, .024, flat(.02f, .02f, .02f)));
     SimPoint cluster = shifted(p.bottom_bracket, .50 * cos(73.5 * M_PI / 180), .50 * sin(73.5 * M_PI / 180));
     sim_shape_list_add(list, sim_shape_capsule(shifted(p.head, .002, .03), .021, p.crown, .025 * aero, tube));
     sim_shape_list_add(list, sim_shape_capsule(p.crown, .022 * aero, p.front_hub, .010, tube));

@@ -32,7 +32,7 @@ typedef struct {
 } SimBicycle;
 
 typedef struct {
-    SimPoint front_hub, rear_hub, bottom_bracket, saddle, crown, head, stem, hood, drop, drop_end, pad;
+    SimPoint front_hub, rear_hub, bottom_bracket, saddle, nose, crown, head, stem, hood, drop, drop_end, pad;
     double crank_m;
 } SimBicyclePoints;
 

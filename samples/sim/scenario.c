@@ -1,7 +1,5 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-#include "samples/sim/scenario.h"
-
-#include "samples/sim/random.h"
+#include "samples/sim/scenario_reader.h"
 
 #include <math.h>
 #include <string.h>
@@ -144,15 +142,6 @@ fill_defaults(SimScenario *s)
     s->entries = g_array_new(FALSE, TRUE, sizeof(SimEntry));
 }
 
-static void
-entry_clear(SimEntry *e)
-{
-    char *texts[] = { e->bib,    e->name,   e->team,  e->nation,      e->category,
-                      e->uci_id, e->status, e->start, e->start_actual };
-    for (guint i = 0; i < G_N_ELEMENTS(texts); i++)
-        g_free(texts[i]);
-}
-
 void
 sim_scenario_free(SimScenario *s)
 {
@@ -162,7 +151,7 @@ sim_scenario_free(SimScenario *s)
     for (guint i = 0; i < G_N_ELEMENTS(texts); i++)
         g_free(texts[i]);
     for (guint i = 0; i < s->entries->len; i++)
-        entry_clear(&g_array_index(s->entries, SimEntry, i));
+        sim_entry_clear(&g_array_index(s->entries, SimEntry, i));
     for (guint i = 0; i < s->teams->len; i++)
         g_free(g_array_index(s->teams, SimTeam, i).name);
     for (int i = 0; i < s->passages; i++) {
@@ -179,49 +168,6 @@ sim_scenario_free(SimScenario *s)
     g_free(s);
 }
 
-typedef struct {
-    const char *path;
-    int line;
-    SimScenario *s;
-    GPtrArray *given, *family;
-    GPtrArray *bunches;
-} Reader;
-
-G_GNUC_PRINTF(3, 4)
-static gboolean
-refuse(Reader *r, GError **error, const char *format, ...)
-{
-    va_list args;
-    va_start(args, format);
-    g_autofree char *text = g_strdup_vprintf(format, args);
-    va_end(args);
-    g_set_error(error, sim_error_quark(), 1, "%s, line %d: %s", r->path, r->line, text);
-    return FALSE;
-}
-
-static gboolean
-number_of(Reader *r, const char *text, double low, double high, double *value, GError **error)
-{
-    char *end = NULL;
-    double v = g_ascii_strtod(text, &end);
-    if (end == text || *end != '\0' || !isfinite(v) || v < low || v > high)
-        return refuse(r, error, "\"%s\" is no number from %g to %g; put one there.", text, low, high);
-    *value = v;
-    return TRUE;
-}
-
-static gboolean
-one_of(Reader *r, const char *text, const char *const *words, int *which, GError **error)
-{
-    for (int i = 0; words[i] != NULL; i++)
-        if (strcmp(text, words[i]) == 0) {
-            *which = i;
-            return TRUE;
-        }
-    g_autofree char *all = g_strjoinv(", ", (char **)words);
-    return refuse(r, error, "\"%s\" is none of %s; put one of these.", text, all);
-}
-
 static float
 linear_of(int code)
 {
@@ -230,42 +176,19 @@ linear_of(int code)
 }
 
 static gboolean
-colour_of(Reader *r, const char *text, SimColour *c, GError **error)
+colour_of(SimReader *r, const char *text, SimColour *c, GError **error)
 {
     char *end = NULL;
     guint64 v = text[0] == '#' ? g_ascii_strtoull(text + 1, &end, 16) : 0;
     if (text[0] != '#' || strlen(text) != 7 || *end != '\0')
-        return refuse(r, error, "\"%s\" is no colour; write it as #rrggbb.", text);
+        return sim_reader_refuse(r, error, "\"%s\" is no colour; write it as #rrggbb.", text);
     *c = (SimColour){ linear_of((int)(v >> 16 & 255)), linear_of((int)(v >> 8 & 255)),
                       linear_of((int)(v & 255)) };
     return TRUE;
 }
 
-/* The words of a line, parted by blanks. */
-static char **
-words_of(const char *text)
-{
-    g_auto(GStrv) raw = g_strsplit_set(text, " \t", -1);
-    g_autoptr(GPtrArray) words = g_ptr_array_new();
-    for (int i = 0; raw[i] != NULL; i++)
-        if (raw[i][0] != '\0')
-            g_ptr_array_add(words, g_strdup(raw[i]));
-    g_ptr_array_add(words, NULL);
-    return (char **)g_ptr_array_free(g_steal_pointer(&words), FALSE);
-}
-
-/* The fields of a line, parted by |. */
-static char **
-fields_of(const char *text)
-{
-    char **f = g_strsplit(text, "|", -1);
-    for (int i = 0; f[i] != NULL; i++)
-        g_strstrip(f[i]);
-    return f;
-}
-
 static gboolean
-read_plain(Reader *r, const Key *k, const char *value, GError **error)
+read_plain(SimReader *r, const Key *k, const char *value, GError **error)
 {
     char *base = (char *)r->s + k->offset;
     double v = 0;
@@ -277,14 +200,14 @@ read_plain(Reader *r, const Key *k, const char *value, GError **error)
         *(char **)(void *)base = g_strdup(value);
         return TRUE;
     case KEY_NUMBER:
-        return number_of(r, value, k->low, k->high, (double *)(void *)base, error);
+        return sim_reader_number(r, value, k->low, k->high, (double *)(void *)base, error);
     case KEY_COUNT:
-        if (!number_of(r, value, k->low, k->high, &v, error))
+        if (!sim_reader_number(r, value, k->low, k->high, &v, error))
             return FALSE;
         *(int *)(void *)base = (int)v;
         return TRUE;
     case KEY_YES:
-        if (!one_of(r, value, YES, &which, error))
+        if (!sim_reader_one_of(r, value, YES, &which, error))
             return FALSE;
         *(gboolean *)(void *)base = which;
         return TRUE;
@@ -293,16 +216,16 @@ read_plain(Reader *r, const Key *k, const char *value, GError **error)
 }
 
 static gboolean
-read_drop(Reader *r, const char *value, GError **error)
+read_drop(SimReader *r, const char *value, GError **error)
 {
     static const char *const KINDS[] = { "honest", "hidden", NULL };
-    g_auto(GStrv) w = words_of(value);
+    g_auto(GStrv) w = sim_reader_words(value);
     int kind = 0;
     double at = 0, scans = 0;
     if (g_strv_length(w) != 3)
-        return refuse(r, error, "a drop is honest or hidden, its second and its number of scans.");
-    if (!one_of(r, w[0], KINDS, &kind, error) || !number_of(r, w[1], 0, 1e6, &at, error) ||
-        !number_of(r, w[2], 1, 1e6, &scans, error))
+        return sim_reader_refuse(r, error, "a drop is honest or hidden, its second and its number of scans.");
+    if (!sim_reader_one_of(r, w[0], KINDS, &kind, error) || !sim_reader_number(r, w[1], 0, 1e6, &at, error) ||
+        !sim_reader_number(r, w[2], 1, 1e6, &scans, error))
         return FALSE;
     SimDrop d = { at, (int)scans, kind == 1 };
     g_array_append_val(r->s->drops, d);
@@ -310,15 +233,17 @@ read_drop(Reader *r, const char *value, GError **error)
 }
 
 static gboolean
-read_damage(Reader *r, const char *value, GError **error)
+read_damage(SimReader *r, const char *value, GError **error)
 {
     static const char *const KINDS[] = { "cut", "missing", "altered", NULL };
-    g_auto(GStrv) w = words_of(value);
+    g_auto(GStrv) w = sim_reader_words(value);
     int kind = 0;
     double block = 0;
     if (g_strv_length(w) != 2)
-        return refuse(r, error, "a damage is cut, missing or altered, and the number of its block.");
-    if (!one_of(r, w[0], KINDS, &kind, error) || !number_of(r, w[1], 0, 1e6, &block, error))
+        return sim_reader_refuse(r, error,
+                                 "a damage is cut, missing or altered, and the number of its block.");
+    if (!sim_reader_one_of(r, w[0], KINDS, &kind, error) ||
+        !sim_reader_number(r, w[1], 0, 1e6, &block, error))
         return FALSE;
     SimDamage d = { (SimDamageKind)kind, (int)block };
     g_array_append_val(r->s->damages, d);
@@ -326,21 +251,21 @@ read_damage(Reader *r, const char *value, GError **error)
 }
 
 static gboolean
-read_passage(Reader *r, const char *value, GError **error)
+read_passage(SimReader *r, const char *value, GError **error)
 {
-    g_auto(GStrv) f = fields_of(value);
+    g_auto(GStrv) f = sim_reader_fields(value);
     double laps = -1;
     if (g_strv_length(f) < 2 || r->s->passages == SIM_PASSAGES_MAX)
-        return refuse(r, error, "a passage is NAME | KIND | LAPS TO GO, at most %d of them.",
-                      SIM_PASSAGES_MAX);
-    if (f[2] != NULL && !number_of(r, f[2], 0, 1000, &laps, error))
+        return sim_reader_refuse(r, error, "a passage is NAME | KIND | LAPS TO GO, at most %d of them.",
+                                 SIM_PASSAGES_MAX);
+    if (f[2] != NULL && !sim_reader_number(r, f[2], 0, 1000, &laps, error))
         return FALSE;
     r->s->passage[r->s->passages++] = (SimPassage){ g_strdup(f[0]), g_strdup(f[1]), (int)laps };
     return TRUE;
 }
 
 static gboolean
-read_key(Reader *r, const char *section, const char *key, const char *value, GError **error)
+read_key(SimReader *r, const char *section, const char *key, const char *value, GError **error)
 {
     static const char *const SIDES[] = { "left", "right", NULL };
     static const char *const STAMPS[] = { "start", "middle", "end", NULL };
@@ -352,34 +277,35 @@ read_key(Reader *r, const char *section, const char *key, const char *value, GEr
             return read_plain(r, &KEYS[i], value, error);
     g_autofree char *full = g_strconcat(section, ".", key, NULL);
     if (strcmp(full, "recording.travel") == 0)
-        return one_of(r, value, SIDES, &s->travel_right, error);
+        return sim_reader_one_of(r, value, SIDES, &s->travel_right, error);
     if (strcmp(full, "recording.later") == 0) {
-        gboolean ok = one_of(r, value, SIDES, &which, error);
+        gboolean ok = sim_reader_one_of(r, value, SIDES, &which, error);
         s->later_left = which == 0;
         return ok;
     }
     if (strcmp(full, "recording.stamp") == 0) {
-        gboolean ok = one_of(r, value, STAMPS, &which, error);
+        gboolean ok = sim_reader_one_of(r, value, STAMPS, &which, error);
         s->stamp = (SimStamp)which;
         return ok;
     }
     if (strcmp(full, "recording.format") == 0) {
-        gboolean ok = one_of(r, value, FORMATS, &which, error);
+        gboolean ok = sim_reader_one_of(r, value, FORMATS, &which, error);
         s->format = (SimFormat)which;
         return ok;
     }
     if (strcmp(full, "recording.seed") == 0) {
         double v = 0;
-        gboolean ok = number_of(r, value, 0, 4294967295.0, &v, error);
+        gboolean ok = sim_reader_number(r, value, 0, 4294967295.0, &v, error);
         s->seed = (uint64_t)v;
         return ok;
     }
     if (strcmp(full, "recording.record") == 0) {
-        g_auto(GStrv) w = words_of(value);
+        g_auto(GStrv) w = sim_reader_words(value);
         double from = 0, to = 0;
         if (g_strv_length(w) != 2)
-            return refuse(r, error, "record takes two numbers, from and to in seconds.");
-        if (!number_of(r, w[0], 0, 1e6, &from, error) || !number_of(r, w[1], from, 1e6, &to, error))
+            return sim_reader_refuse(r, error, "record takes two numbers, from and to in seconds.");
+        if (!sim_reader_number(r, w[0], 0, 1e6, &from, error) ||
+            !sim_reader_number(r, w[1], from, 1e6, &to, error))
             return FALSE;
         g_array_append_val(s->windows, from);
         g_array_append_val(s->windows, to);
@@ -396,10 +322,10 @@ read_key(Reader *r, const char *section, const char *key, const char *value, GEr
         return TRUE;
     }
     if (strcmp(section, "teams") == 0) {
-        g_auto(GStrv) w = words_of(value);
+        g_auto(GStrv) w = sim_reader_words(value);
         SimTeam t = { 0 };
         if (g_strv_length(w) != 3)
-            return refuse(r, error, "a team has three colours: jersey, band, shorts.");
+            return sim_reader_refuse(r, error, "a team has three colours: jersey, band, shorts.");
         if (!colour_of(r, w[0], &t.first, error) || !colour_of(r, w[1], &t.second, error) ||
             !colour_of(r, w[2], &t.shorts, error))
             return FALSE;
@@ -407,240 +333,11 @@ read_key(Reader *r, const char *section, const char *key, const char *value, GEr
         g_array_append_val(s->teams, t);
         return TRUE;
     }
-    return refuse(r, error, "there is no key \"%s\" under [%s]; --help lists them.", key, section);
-}
-
-static const SimColour SKIN[] = { { .58f, .34f, .25f },
-                                  { .50f, .29f, .20f },
-                                  { .42f, .23f, .15f },
-                                  { .30f, .16f, .10f },
-                                  { .13f, .065f, .042f } };
-
-/* What the file doesn't say about a rider is drawn from the rider's own stream. */
-static void
-draw_rider(SimScenario *s, SimEntry *e)
-{
-    SimRandom rnd;
-    sim_random_init(&rnd, s->seed, g_str_hash(e->bib) ^ g_str_hash(e->category) << 1);
-    SimRider *l = &e->look;
-    const SimTeam *team = NULL;
-    for (guint i = 0; i < s->teams->len; i++)
-        if (strcmp(g_array_index(s->teams, SimTeam, i).name, e->team) == 0)
-            team = &g_array_index(s->teams, SimTeam, i);
-    SimColour grey = { .35f, .35f, .36f };
-    SimColour first = team != NULL ? team->first : grey, second = team != NULL ? team->second : grey;
-    SimColour shorts = team != NULL ? team->shorts : (SimColour){ .03f, .03f, .03f };
-    e->lateral_m = sim_random_between(&rnd, 1.5, s->road_m - 1.2);
-    e->speed_mps = sim_random_between(&rnd, 16.5, 18.2);
-    e->rider_kg = sim_random_between(&rnd, 64, 82);
-    e->bike_kg = sim_random_between(&rnd, 6.9, 7.9);
-    e->power_w = sim_random_between(&rnd, 850, 1250);
-    e->cda_m2 = sim_random_between(&rnd, .24, .31);
-    e->throw_start_s = -.15;
-    e->throw_duration_s = .2;
-    l->seed = sim_random_next(&rnd);
-    l->size = sim_random_between(&rnd, .94, 1.05);
-    l->development_m = sim_random_between(&rnd, 8.2, 9.6);
-    l->crank_start_rad = sim_random_between(&rnd, 0, 2 * M_PI);
-    l->wheel_start_rad = sim_random_between(&rnd, 0, 2 * M_PI);
-    l->head_turn = sim_random_between(&rnd, -.8, .9);
-    double posture = sim_random_between(&rnd, 0, 1);
-    l->posture = posture < .42 ? SIM_POSTURE_SPRINT : posture < .80 ? SIM_POSTURE_SEATED : SIM_POSTURE_HOODS;
-    l->jersey = first;
-    l->jersey_band = second;
-    l->sleeve = sim_random_between(&rnd, 0, 1) < .7 ? second : first;
-    l->band_from = .30f;
-    l->band_to = .62f;
-    l->shorts = shorts;
-    l->shorts_band = first;
-    l->skin = SKIN[sim_random_next(&rnd) % G_N_ELEMENTS(SKIN)];
-    static const SimColour LIGHT_DARK[] = { { .78f, .78f, .76f },
-                                            { .03f, .03f, .03f },
-                                            { .70f, .70f, .72f } };
-    l->sock = LIGHT_DARK[sim_random_next(&rnd) % 3];
-    static const SimColour SHOES[] = {
-        { .75f, .75f, .75f }, { .025f, .025f, .025f }, { .55f, .04f, .03f }, { .78f, .78f, .74f }
-    };
-    l->shoe = SHOES[sim_random_next(&rnd) % 4];
-    l->helmet = sim_random_between(&rnd, 0, 1) < .6 ? first : second;
-    l->number_on_back = l->number_on_frame = true;
-    l->read_backwards = s->travel_right;
-    g_strlcpy(l->bib, e->bib, sizeof l->bib);
-
-    SimBicycle *b = &l->bicycle;
-    b->diameter_m = sim_random_between(&rnd, .666, .674);
-    b->wheelbase_m = sim_random_between(&rnd, .975, 1.005) + .02 * (l->size - 1);
-    b->saddle_m = .735 * l->size;
-    b->rim_m = sim_random_between(&rnd, .028, .062);
-    b->front_spokes = 18;
-    b->rear_spokes = 22;
-    b->drive_near = s->travel_right;
-    b->track = s->indoors;
-    static const SimColour FRAMES[] = { { .02f, .02f, .022f },
-                                        { .55f, .04f, .03f },
-                                        { .70f, .70f, .70f },
-                                        { .03f, .10f, .30f },
-                                        { .03f, .03f, .03f } };
-    b->frame = sim_random_between(&rnd, 0, 1) < .5 ? first : FRAMES[sim_random_next(&rnd) % 5];
-    b->frame_band = second;
-    b->rim = (SimColour){ .024f, .024f, .026f };
-    b->bar_tape =
-        sim_random_between(&rnd, 0, 1) < .7 ? (SimColour){ .02f, .02f, .02f } : (SimColour){ .7f, .7f, .7f };
-    b->bottle = sim_random_between(&rnd, 0, 1) < .5 ? (SimColour){ .7f, .7f, .68f } : second;
-    b->seed = l->seed;
+    return sim_reader_refuse(r, error, "there is no key \"%s\" under [%s]; --help lists them.", key, section);
 }
 
 static gboolean
-read_crossings(Reader *r, SimEntry *e, const char *value, GError **error)
-{
-    g_auto(GStrv) w = g_strsplit(value, ",", -1);
-    e->crossings = 0;
-    for (int i = 0; w[i] != NULL; i++) {
-        if (i == SIM_PASSAGES_MAX)
-            return refuse(r, error, "rider %s has more than %d crossings; leave some out.", e->bib,
-                          SIM_PASSAGES_MAX);
-        e->at_s[e->crossings] = NAN;
-        if (strcmp(w[i], "-") != 0 && !number_of(r, w[i], 0, 1e6, &e->at_s[e->crossings], error))
-            return FALSE;
-        e->crossings++;
-    }
-    return TRUE;
-}
-
-static gboolean
-read_throw(Reader *r, SimEntry *e, const char *value, GError **error)
-{
-    g_auto(GStrv) w = g_strsplit_set(value, "@/", -1);
-    if (g_strv_length(w) != 3)
-        return refuse(r, error, "a throw is METRES@START/DURATION.");
-    return number_of(r, w[0], 0, 1, &e->throw_m, error) &&
-           number_of(r, w[1], -3, 3, &e->throw_start_s, error) &&
-           number_of(r, w[2], 0.01, 3, &e->throw_duration_s, error);
-}
-
-static gboolean
-read_option(Reader *r, SimEntry *e, const char *key, const char *value, GError **error)
-{
-    static const char *const POSTURES[] = { "sprint", "seated", "hoods", "extended", NULL };
-    int which = 0;
-    if (strcmp(key, "at") == 0)
-        return read_crossings(r, e, value, error);
-    if (strcmp(key, "throw") == 0)
-        return read_throw(r, e, value, error);
-    if (strcmp(key, "y") == 0)
-        return number_of(r, value, 0, 50, &e->lateral_m, error);
-    if (strcmp(key, "v") == 0)
-        return number_of(r, value, 1.5, 30, &e->speed_mps, error);
-    if (strcmp(key, "p") == 0)
-        return number_of(r, value, 0, 3000, &e->power_w, error);
-    if (strcmp(key, "kg") == 0)
-        return number_of(r, value, 30, 150, &e->rider_kg, error);
-    if (strcmp(key, "bike") == 0)
-        return number_of(r, value, 5, 20, &e->bike_kg, error);
-    if (strcmp(key, "cda") == 0)
-        return number_of(r, value, .1, .6, &e->cda_m2, error);
-    if (strcmp(key, "d") == 0)
-        return number_of(r, value, .5, .75, &e->look.bicycle.diameter_m, error);
-    if (strcmp(key, "posture") == 0) {
-        if (!one_of(r, value, POSTURES, &which, error))
-            return FALSE;
-        e->look.posture = (SimPosture)which;
-        e->look.bicycle.time_trial = e->look.bicycle.disc_wheel = which == SIM_POSTURE_EXTENDED;
-        if (which == SIM_POSTURE_EXTENDED)
-            e->look.bicycle.rim_m = .075;
-        return TRUE;
-    }
-    char **place = strcmp(key, "start") == 0     ? &e->start
-                   : strcmp(key, "started") == 0 ? &e->start_actual
-                   : strcmp(key, "status") == 0  ? &e->status
-                   : strcmp(key, "uci") == 0     ? &e->uci_id
-                                                 : NULL;
-    if (place == NULL)
-        return refuse(r, error, "a rider has no option \"%s\"; --help lists them.", key);
-    g_free(*place);
-    *place = g_strdup(value);
-    return TRUE;
-}
-
-static gboolean
-read_rider(Reader *r, const char *text, GError **error)
-{
-    g_auto(GStrv) f = fields_of(text);
-    if (g_strv_length(f) < 5)
-        return refuse(r, error, "a rider is BIB | NAME | TEAM | NATION | CATEGORY | options.");
-    SimEntry e = { .bib = g_strdup(f[0]),
-                   .name = g_strdup(f[1]),
-                   .team = g_strdup(f[2]),
-                   .nation = g_strdup(f[3]),
-                   .category = g_strdup(f[4]) };
-    draw_rider(r->s, &e);
-    gboolean ok = TRUE;
-    g_auto(GStrv) w = words_of(f[5] != NULL ? f[5] : "");
-    for (int i = 0; ok && w[i] != NULL; i++) {
-        char *equal = strchr(w[i], '=');
-        if (equal == NULL)
-            ok = refuse(r, error, "\"%s\" is no option=value.", w[i]);
-        else {
-            *equal = '\0';
-            ok = read_option(r, &e, w[i], equal + 1, error);
-        }
-    }
-    if (!ok) {
-        entry_clear(&e);
-        return FALSE;
-    }
-    g_array_append_val(r->s->entries, e);
-    return TRUE;
-}
-
-/* COUNT | FIRST BIB | FROM | TO | CATEGORY: riders in clumps, the first ones close. */
-static gboolean
-make_bunch(Reader *r, const char *text, GError **error)
-{
-    g_auto(GStrv) f = fields_of(text);
-    double count = 0, bib = 0, from = 0, to = 0;
-    if (g_strv_length(f) != 5 || r->given->len == 0 || r->family->len == 0 || r->s->teams->len == 0)
-        return refuse(
-            r, error,
-            "a bunch is COUNT | FIRST BIB | FROM | TO | CATEGORY and needs [teams], [given] and [family].");
-    if (!number_of(r, f[0], 1, 1000, &count, error) || !number_of(r, f[1], 1, 9999, &bib, error) ||
-        !number_of(r, f[2], 0, 1e6, &from, error) || !number_of(r, f[3], from, 1e6, &to, error))
-        return FALSE;
-    SimRandom rnd;
-    sim_random_init(&rnd, r->s->seed, 77);
-    double at = from;
-    g_autofree double *times = g_new(double, (gsize)count);
-    for (int i = 0; i < (int)count; i++) {
-        times[i] = at;
-        double u = sim_random_between(&rnd, 0, 1);
-        at += u < .75 ? -.05 * log(1 - u * .9) : u < .96 ? .12 + .5 * (u - .75) : 1.1 + 60 * (u - .96);
-    }
-    double scale = (to - from) / fmax(times[(int)count - 1] - from, 1e-9);
-    int n = (int)count;
-    g_autofree int *turn = g_new(int, (gsize)n);
-    for (int i = 0; i < n; i++)
-        turn[i] = i;
-    for (int i = n - 1; i > 0; i--) {
-        int j = (int)(sim_random_next(&rnd) % (uint32_t)(i + 1)), k = turn[i];
-        turn[i] = turn[j];
-        turn[j] = k;
-    }
-    for (int i = 0; i < n; i++) {
-        const char *g = g_ptr_array_index(r->given, sim_random_next(&rnd) % r->given->len);
-        const char *l = g_ptr_array_index(r->family, sim_random_next(&rnd) % r->family->len);
-        const SimTeam *t = &g_array_index(r->s->teams, SimTeam, (guint)i % r->s->teams->len);
-        char at_text[G_ASCII_DTOSTR_BUF_SIZE];
-        g_ascii_formatd(at_text, sizeof at_text, "%.9f", from + (times[turn[i]] - from) * scale);
-        g_autofree char *line =
-            g_strdup_printf("%d | %s %s | %s | | %s | at=%s", (int)bib + i, g, l, t->name, f[4], at_text);
-        if (!read_rider(r, line, error))
-            return FALSE;
-    }
-    return TRUE;
-}
-
-static gboolean
-read_line(Reader *r, char **section, char *line, GError **error)
+read_line(SimReader *r, char **section, char *line, GError **error)
 {
     g_strstrip(line);
     size_t n = strlen(line);
@@ -648,13 +345,13 @@ read_line(Reader *r, char **section, char *line, GError **error)
         return TRUE;
     if (line[0] == '[') {
         if (line[n - 1] != ']')
-            return refuse(r, error, "a section is written [name].");
+            return sim_reader_refuse(r, error, "a section is written [name].");
         g_free(*section);
         *section = g_strndup(line + 1, n - 2);
         return TRUE;
     }
     if (strcmp(*section, "riders") == 0)
-        return read_rider(r, line, error);
+        return sim_reader_rider(r, line, error);
     GPtrArray *list = strcmp(*section, "given") == 0    ? r->given
                       : strcmp(*section, "family") == 0 ? r->family
                       : strcmp(*section, "bunch") == 0  ? r->bunches
@@ -665,7 +362,7 @@ read_line(Reader *r, char **section, char *line, GError **error)
     }
     char *equal = strchr(line, '=');
     if (equal == NULL)
-        return refuse(r, error, "\"%s\" is no key = value.", line);
+        return sim_reader_refuse(r, error, "\"%s\" is no key = value.", line);
     *equal = '\0';
     g_strstrip(line);
     g_strstrip(equal + 1);
@@ -673,29 +370,29 @@ read_line(Reader *r, char **section, char *line, GError **error)
 }
 
 static gboolean
-check(Reader *r, GError **error)
+check(SimReader *r, GError **error)
 {
     SimScenario *s = r->s;
     r->line = 0;
     if (s->title == NULL || s->epoch == NULL)
-        return refuse(r, error, "the scenario needs a title and an epoch.");
-    if (!number_of(r, s->rate_text, 1, 1e6, &s->rate_hz, error))
+        return sim_reader_refuse(r, error, "the scenario needs a title and an epoch.");
+    if (!sim_reader_number(r, s->rate_text, 1, 1e6, &s->rate_hz, error))
         return FALSE;
     if (s->exposure_us * s->rate_hz > 1e6 * (1 + 1e-9))
-        return refuse(r, error, "an exposure of %g microseconds is longer than a scan at %g Hz.",
-                      s->exposure_us, s->rate_hz);
+        return sim_reader_refuse(r, error, "an exposure of %g microseconds is longer than a scan at %g Hz.",
+                                 s->exposure_us, s->rate_hz);
     if (strcmp(s->transfer, "srgb") != 0 && strcmp(s->transfer, "linear") != 0)
-        return refuse(r, error, "transfer is srgb or linear.");
+        return sim_reader_refuse(r, error, "transfer is srgb or linear.");
     if (s->bits != 8 && s->bits != 16)
-        return refuse(r, error, "bits is 8 or 16.");
+        return sim_reader_refuse(r, error, "bits is 8 or 16.");
     if (s->event == NULL)
         s->event = g_strdup(s->title);
     if (s->passages == 0)
         s->passage[s->passages++] = (SimPassage){ g_strdup("finish"), g_strdup("finish"), -1 };
     for (guint i = 0; i < s->entries->len; i++)
         if (g_array_index(s->entries, SimEntry, i).crossings > s->passages)
-            return refuse(r, error, "rider %s has more crossings than there are passages.",
-                          g_array_index(s->entries, SimEntry, i).bib);
+            return sim_reader_refuse(r, error, "rider %s has more crossings than there are passages.",
+                                     g_array_index(s->entries, SimEntry, i).bib);
     return TRUE;
 }
 
@@ -710,12 +407,12 @@ sim_scenario_load(const char *path, GError **error)
     g_autofree char *base = g_path_get_basename(path);
     char *dot = strrchr(base, '.');
     s->name = g_strndup(base, dot != NULL ? (gsize)(dot - base) : strlen(base));
-    Reader r = { path,
-                 0,
-                 s,
-                 g_ptr_array_new_with_free_func(g_free),
-                 g_ptr_array_new_with_free_func(g_free),
-                 g_ptr_array_new_with_free_func(g_free) };
+    SimReader r = { path,
+                    0,
+                    s,
+                    g_ptr_array_new_with_free_func(g_free),
+                    g_ptr_array_new_with_free_func(g_free),
+                    g_ptr_array_new_with_free_func(g_free) };
     g_autofree char *section = g_strdup("");
     g_auto(GStrv) lines = g_strsplit(text, "\n", -1);
     gboolean ok = TRUE;
@@ -724,7 +421,7 @@ sim_scenario_load(const char *path, GError **error)
         ok = read_line(&r, &section, lines[i], error);
     }
     for (guint i = 0; ok && i < r.bunches->len; i++)
-        ok = make_bunch(&r, g_ptr_array_index(r.bunches, i), error);
+        ok = sim_reader_bunch(&r, g_ptr_array_index(r.bunches, i), error);
     ok = ok && check(&r, error);
     g_ptr_array_unref(r.given);
     g_ptr_array_unref(r.family);
