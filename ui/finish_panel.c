@@ -1,0 +1,220 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+#include "ui/finish_panel.h"
+
+#include "ui/finish_row.h"
+#include "ui/pair_words.h"
+
+#include <glib/gi18n.h>
+
+struct _HwFinishPanel {
+    GtkBox parent_instance;
+
+    HwSession *session;
+    bool is_showing; /* rows are being changed by us, not by the user */
+    guint n_rows;
+
+    GtkLabel *summary;
+    GtkListBox *list;
+    GtkLabel *pair;
+    GtkWidget *notes_window;
+    GtkBox *notes;
+    GtkLabel *check;
+    GtkLabel *check_whole;
+};
+
+enum { EDIT_NAME, N_SIGNALS };
+
+static guint signals[N_SIGNALS];
+
+G_DEFINE_FINAL_TYPE(HwFinishPanel, hw_finish_panel, GTK_TYPE_BOX)
+
+static void
+set_text(GtkLabel *label, const char *text)
+{
+    if (g_strcmp0(gtk_label_get_text(label), text) != 0)
+        gtk_label_set_text(label, text);
+}
+
+static HwFinishRowWidget *
+row_at(HwFinishPanel *panel, guint index)
+{
+    return HW_FINISH_ROW_WIDGET(gtk_list_box_get_row_at_index(panel->list, (int)index));
+}
+
+/* Riders keep their row widgets where they can: what stands before and after the change stays, only the
+ * middle is taken out and put in. */
+static void
+match_rows(HwFinishPanel *panel, const HwFinishList *list)
+{
+    guint n_new = list ? list->rows->len : 0;
+    guint head = 0, tail = 0;
+
+    while (head < n_new && head < panel->n_rows &&
+           hw_finish_row_widget_is_of(row_at(panel, head), g_ptr_array_index(list->rows, head)))
+        head++;
+    while (tail + head < n_new && tail + head < panel->n_rows &&
+           hw_finish_row_widget_is_of(row_at(panel, panel->n_rows - 1 - tail),
+                                      g_ptr_array_index(list->rows, n_new - 1 - tail)))
+        tail++;
+    while (panel->n_rows > n_new && panel->n_rows > head + tail) {
+        gtk_list_box_remove(panel->list, GTK_WIDGET(row_at(panel, head)));
+        panel->n_rows--;
+    }
+    while (panel->n_rows < n_new) {
+        gtk_list_box_insert(panel->list, hw_finish_row_widget_new(), (int)head);
+        panel->n_rows++;
+    }
+}
+
+static void
+show_selection(HwFinishPanel *panel)
+{
+    int row = hw_session_find_row(panel->session, hw_session_get_selection(panel->session));
+    const HwFinishList *list = hw_session_get_list(panel->session, NULL);
+    g_autofree char *pair = NULL;
+
+    panel->is_showing = true;
+    if (row < 0) {
+        gtk_list_box_unselect_all(panel->list);
+    } else {
+        gtk_list_box_select_row(panel->list, GTK_LIST_BOX_ROW(row_at(panel, (guint)row)));
+        pair = hw_pair_words_dup(hw_pair_words_find_ahead(list, (guint)row),
+                                 g_ptr_array_index(list->rows, (guint)row));
+    }
+    panel->is_showing = false;
+    set_text(panel->pair, pair ? pair : "");
+    gtk_widget_set_visible(GTK_WIDGET(panel->pair), pair != NULL);
+}
+
+static void
+add_note(HwFinishPanel *panel, const char *sentence, const char *class)
+{
+    GtkWidget *label = gtk_label_new(sentence);
+
+    gtk_label_set_xalign(GTK_LABEL(label), 0.0F);
+    gtk_label_set_wrap(GTK_LABEL(label), TRUE);
+    gtk_label_set_wrap_mode(GTK_LABEL(label), PANGO_WRAP_WORD_CHAR);
+    gtk_label_set_selectable(GTK_LABEL(label), FALSE);
+    gtk_widget_add_css_class(label, "small");
+    if (class)
+        gtk_widget_add_css_class(label, class);
+    gtk_box_append(panel->notes, label);
+}
+
+static void
+show_notes(HwFinishPanel *panel, const HwFinishList *list, const char *sentence)
+{
+    const GPtrArray *conflicts = hw_session_get_conflicts(panel->session);
+    GtkWidget *child;
+
+    while ((child = gtk_widget_get_first_child(GTK_WIDGET(panel->notes))))
+        gtk_box_remove(panel->notes, child);
+    if (sentence)
+        add_note(panel, sentence, "error");
+    for (guint i = 0; i < conflicts->len; i++)
+        add_note(panel, g_ptr_array_index(conflicts, i), "error");
+    for (guint i = 0; list && i < list->problems->len; i++)
+        add_note(panel, g_ptr_array_index(list->problems, i), NULL);
+    gtk_widget_set_visible(panel->notes_window, gtk_widget_get_first_child(GTK_WIDGET(panel->notes)) != NULL);
+}
+
+static void
+list_changed_cb(HwFinishPanel *panel)
+{
+    const char *sentence = NULL;
+    const HwFinishList *list = hw_session_get_list(panel->session, &sentence);
+    g_autofree char *check = list ? hw_pair_words_dup_check(list) : NULL;
+    g_autofree char *whole = list ? hw_pair_words_dup_check_whole(list) : NULL;
+
+    panel->is_showing = true;
+    match_rows(panel, list);
+    for (guint i = 0; i < panel->n_rows; i++) {
+        const HwFinishRow *row = g_ptr_array_index(list->rows, i);
+
+        hw_finish_row_widget_show(
+            row_at(panel, i), list, row,
+            hw_session_get_marker(panel->session, hw_session_find_marker(panel->session, row)));
+    }
+    panel->is_showing = false;
+    show_notes(panel, list, sentence);
+    set_text(panel->check, check ? check : "");
+    set_text(panel->check_whole, whole ? whole : "");
+    set_text(panel->summary,
+             list && list->unrounded ? _("Finish list: measured order, not rounded") : _("Finish list"));
+    show_selection(panel);
+}
+
+static void
+row_selected_cb(HwFinishPanel *panel, GtkListBoxRow *row)
+{
+    const HwFinishList *list = hw_session_get_list(panel->session, NULL);
+    int index, marker;
+
+    if (panel->is_showing || !row || !list)
+        return;
+    index = gtk_list_box_row_get_index(row);
+    marker = hw_session_find_marker(panel->session, g_ptr_array_index(list->rows, (guint)index));
+    if (marker >= 0) {
+        const HwMarker *found = hw_session_get_marker(panel->session, marker);
+
+        hw_session_set_selection(panel->session, marker);
+        hw_session_set_hand_row(panel->session, found->row);
+        hw_session_set_reading_cell(
+            panel->session, hw_axis_position(hw_session_get_axis(panel->session), found->column), true);
+    }
+}
+
+static void
+row_activated_cb(HwFinishPanel *panel, GtkListBoxRow *row)
+{
+    (void)row;
+    if (hw_session_get_selection(panel->session) >= 0)
+        g_signal_emit(panel, signals[EDIT_NAME], 0);
+}
+
+static void
+hw_finish_panel_dispose(GObject *object)
+{
+    HwFinishPanel *panel = HW_FINISH_PANEL(object);
+
+    if (panel->session)
+        g_signal_handlers_disconnect_by_data(panel->session, panel);
+    g_clear_object(&panel->session);
+    G_OBJECT_CLASS(hw_finish_panel_parent_class)->dispose(object);
+}
+
+static void
+hw_finish_panel_class_init(HwFinishPanelClass *class)
+{
+    GtkWidgetClass *widget_class = GTK_WIDGET_CLASS(class);
+
+    G_OBJECT_CLASS(class)->dispose = hw_finish_panel_dispose;
+    signals[EDIT_NAME] = g_signal_new("edit-name", HW_TYPE_FINISH_PANEL, G_SIGNAL_RUN_LAST, 0, NULL, NULL,
+                                      NULL, G_TYPE_NONE, 0);
+    gtk_widget_class_set_template_from_resource(widget_class, "/org/halfwheel/Halfwheel/finish_panel.ui");
+    gtk_widget_class_bind_template_child(widget_class, HwFinishPanel, summary);
+    gtk_widget_class_bind_template_child(widget_class, HwFinishPanel, list);
+    gtk_widget_class_bind_template_child(widget_class, HwFinishPanel, pair);
+    gtk_widget_class_bind_template_child(widget_class, HwFinishPanel, notes_window);
+    gtk_widget_class_bind_template_child(widget_class, HwFinishPanel, notes);
+    gtk_widget_class_bind_template_child(widget_class, HwFinishPanel, check);
+    gtk_widget_class_bind_template_child(widget_class, HwFinishPanel, check_whole);
+    gtk_widget_class_bind_template_callback(widget_class, row_selected_cb);
+    gtk_widget_class_bind_template_callback(widget_class, row_activated_cb);
+}
+
+static void
+hw_finish_panel_init(HwFinishPanel *panel)
+{
+    gtk_widget_init_template(GTK_WIDGET(panel));
+}
+
+void
+hw_finish_panel_set_session(HwFinishPanel *panel, HwSession *session)
+{
+    panel->session = g_object_ref(session);
+    g_signal_connect_object(session, "list-changed", G_CALLBACK(list_changed_cb), panel, G_CONNECT_SWAPPED);
+    g_signal_connect_object(session, "notify::selection", G_CALLBACK(show_selection), panel,
+                            G_CONNECT_SWAPPED);
+    list_changed_cb(panel);
+}

@@ -1,0 +1,14 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+/* The panel beside the picture: the finish list, the selected pair in one sentence, what is to be noted, and
+ * the rider check. Selecting a row selects its marker and brings the line there. Signal "edit-name": Enter on
+ * a row whose marker the line stands at already. */
+#pragma once
+
+#include "ui/session.h"
+
+#include <gtk/gtk.h>
+
+#define HW_TYPE_FINISH_PANEL (hw_finish_panel_get_type())
+G_DECLARE_FINAL_TYPE(HwFinishPanel, hw_finish_panel, HW, FINISH_PANEL, GtkBox)
+
+void hw_finish_panel_set_session(HwFinishPanel *panel, HwSession *session);

@@ -1,0 +1,167 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+#include "ui/finish_row.h"
+
+#include <glib/gi18n.h>
+#include <string.h>
+
+struct _HwFinishRowWidget {
+    GtkListBoxRow parent_instance;
+
+    char *bib; /* with the category: whose row this is */
+    char *category;
+    char *spoken;
+
+    GtkLabel *place;
+    GtkLabel *number;
+    GtkLabel *name;
+    GtkLabel *team;
+    GtkLabel *state;
+    GtkLabel *time;
+    GtkLabel *gap;
+};
+
+G_DEFINE_FINAL_TYPE(HwFinishRowWidget, hw_finish_row_widget, GTK_TYPE_LIST_BOX_ROW)
+
+static void
+set_text(GtkLabel *label, const char *text)
+{
+    if (strcmp(gtk_label_get_text(label), text) != 0)
+        gtk_label_set_text(label, text);
+}
+
+static void
+hw_finish_row_widget_finalize(GObject *object)
+{
+    HwFinishRowWidget *widget = HW_FINISH_ROW_WIDGET(object);
+
+    g_free(widget->bib);
+    g_free(widget->category);
+    g_free(widget->spoken);
+    G_OBJECT_CLASS(hw_finish_row_widget_parent_class)->finalize(object);
+}
+
+static void
+hw_finish_row_widget_class_init(HwFinishRowWidgetClass *class)
+{
+    GtkWidgetClass *widget_class = GTK_WIDGET_CLASS(class);
+
+    G_OBJECT_CLASS(class)->finalize = hw_finish_row_widget_finalize;
+    gtk_widget_class_set_template_from_resource(widget_class, "/org/halfwheel/Halfwheel/finish_row.ui");
+    gtk_widget_class_bind_template_child(widget_class, HwFinishRowWidget, place);
+    gtk_widget_class_bind_template_child(widget_class, HwFinishRowWidget, number);
+    gtk_widget_class_bind_template_child(widget_class, HwFinishRowWidget, name);
+    gtk_widget_class_bind_template_child(widget_class, HwFinishRowWidget, team);
+    gtk_widget_class_bind_template_child(widget_class, HwFinishRowWidget, state);
+    gtk_widget_class_bind_template_child(widget_class, HwFinishRowWidget, time);
+    gtk_widget_class_bind_template_child(widget_class, HwFinishRowWidget, gap);
+}
+
+static void
+hw_finish_row_widget_init(HwFinishRowWidget *widget)
+{
+    gtk_widget_init_template(GTK_WIDGET(widget));
+    widget->bib = g_strdup("");
+    widget->category = g_strdup("");
+}
+
+GtkWidget *
+hw_finish_row_widget_new(void)
+{
+    return g_object_new(HW_TYPE_FINISH_ROW_WIDGET, NULL);
+}
+
+/* What stands in the place's column: the place, or why there is none. */
+static char *
+dup_place(const HwFinishRow *row)
+{
+    if (row->rank > 0)
+        return g_strdup_printf(row->tied ? "%d=" : "%d", row->rank);
+    if (row->status == HW_STATUS_NOT_SEEN || row->status == HW_STATUS_UNKNOWN || row->status == HW_STATUS_OK)
+        return g_strdup("–");
+    return g_strdup(hw_status_get_word(row->status));
+}
+
+static char *
+dup_name(const HwFinishRow *row)
+{
+    if (row->unnamed)
+        return g_strdup(_("not yet named"));
+    if (*row->name)
+        return g_strdup(row->name);
+    return g_strdup(row->in_start_list ? "" : _("not in the start list"));
+}
+
+static char *
+dup_team(const HwFinishRow *row)
+{
+    if (row->status == HW_STATUS_NOT_SEEN)
+        return *row->team ? g_strdup_printf(_("%s · still missing"), row->team)
+                          : g_strdup(_("still missing"));
+    return g_strdup(row->team);
+}
+
+static char *
+dup_number(const HwFinishRow *row)
+{
+    const char *mark = row->unnamed ? strstr(row->bib, "·") : NULL;
+
+    return mark ? g_strndup(row->bib, (gsize)(mark - row->bib)) : g_strdup(row->bib);
+}
+
+static void
+show_spoken(HwFinishRowWidget *widget, const char *place, const char *number, const char *name,
+            const char *team, const char *time, const char *gap, bool rough)
+{
+    g_autofree char *spoken = g_strdup_printf(_("%s, number %s, %s, %s, %s, %s%s"), place, number, name, team,
+                                              time, gap, rough ? _(", to re-read") : "");
+
+    if (g_strcmp0(spoken, widget->spoken) == 0)
+        return;
+    g_free(widget->spoken);
+    widget->spoken = g_steal_pointer(&spoken);
+    gtk_accessible_update_property(GTK_ACCESSIBLE(widget), GTK_ACCESSIBLE_PROPERTY_LABEL, widget->spoken, -1);
+}
+
+void
+hw_finish_row_widget_show(HwFinishRowWidget *widget, const HwFinishList *list, const HwFinishRow *row,
+                          const HwMarker *marker)
+{
+    g_autofree char *place = dup_place(row);
+    g_autofree char *number = dup_number(row);
+    g_autofree char *name = dup_name(row);
+    g_autofree char *team = dup_team(row);
+    g_autofree char *time = hw_finish_row_dup_time(list, row);
+    g_autofree char *gap = hw_finish_row_dup_gap(list, row);
+    bool rough = marker && marker->state == HW_MARKER_ROUGH;
+
+    if (strcmp(widget->bib, row->bib) != 0) {
+        g_free(widget->bib);
+        widget->bib = g_strdup(row->bib);
+    }
+    if (strcmp(widget->category, row->category) != 0) {
+        g_free(widget->category);
+        widget->category = g_strdup(row->category);
+    }
+    set_text(widget->place, place);
+    set_text(widget->number, number);
+    set_text(widget->name, name);
+    set_text(widget->team, team);
+    set_text(widget->state, rough ? _("to re-read") : "");
+    set_text(widget->time, time);
+    set_text(widget->gap, gap);
+    if (row->unnamed || !*row->name)
+        gtk_widget_add_css_class(GTK_WIDGET(widget->name), "dim-label");
+    else
+        gtk_widget_remove_css_class(GTK_WIDGET(widget->name), "dim-label");
+    gtk_widget_set_visible(GTK_WIDGET(widget->state), rough);
+    gtk_widget_set_visible(GTK_WIDGET(widget->team), *team != '\0');
+    gtk_widget_set_visible(GTK_WIDGET(widget->gap), *gap != '\0');
+    gtk_widget_set_tooltip_text(GTK_WIDGET(widget->name), *row->name ? row->name : NULL);
+    show_spoken(widget, place, number, name, team, time, gap, rough);
+}
+
+bool
+hw_finish_row_widget_is_of(HwFinishRowWidget *widget, const HwFinishRow *row)
+{
+    return strcmp(widget->bib, row->bib) == 0 && strcmp(widget->category, row->category) == 0;
+}

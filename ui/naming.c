@@ -1,0 +1,228 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+#include "ui/naming.h"
+
+#include "ui/words.h"
+
+#include <glib/gi18n.h>
+#include <math.h>
+#include <string.h>
+
+/* Half a wheel (0.334 m) at 12 m/s: nearer than this a second marker may be the same rider's. A guard against
+ * slips only; nothing is measured by it. */
+#define NEAR_NS INT64_C(28000000)
+
+static double
+marker_cell(HwSession *session, int index)
+{
+    return hw_axis_position(hw_session_get_axis(session), hw_session_get_marker(session, index)->column);
+}
+
+int
+hw_naming_find_marker(HwSession *session, double reach_px, int *n_within)
+{
+    double line = hw_session_get_reading_cell(session);
+    double reach = MAX(reach_px * hw_session_get_view(session)->cells_per_px, 0.5);
+    int selected = hw_session_get_selection(session);
+    int found = -1;
+    double best = INFINITY;
+
+    *n_within = 0;
+    for (int i = 0; i < (int)hw_session_get_n_markers(session); i++) {
+        double cell = marker_cell(session, i);
+        double away = fabs(cell - line);
+
+        if (away > reach || !hw_session_is_in_view(session, cell))
+            continue;
+        ++*n_within;
+        if (found == selected && found >= 0)
+            continue;
+        if (i == selected || away < best) {
+            best = away;
+            found = i;
+        }
+    }
+    return found;
+}
+
+/* The nearest marker in time to the line but one; −1 where none is near. */
+static int
+find_near(HwSession *session, int but, int64_t *away_ns)
+{
+    HwAxis *axis = hw_session_get_axis(session);
+    int64_t line_ns = hw_axis_instant(axis, hw_session_get_reading_cell(session));
+    int64_t best = NEAR_NS;
+    int found = -1;
+
+    for (int i = 0; i < (int)hw_session_get_n_markers(session); i++) {
+        int64_t away = ABS(hw_axis_instant(axis, marker_cell(session, i)) - line_ns);
+
+        if (i == but || away >= best)
+            continue;
+        best = away;
+        found = i;
+    }
+    *away_ns = best;
+    return found;
+}
+
+static HwNaming *
+refuse(HwNaming *naming, char *sentence)
+{
+    naming->state = HW_NAMING_REFUSED;
+    naming->sentence = sentence;
+    return naming;
+}
+
+static HwNaming *
+ask(HwNaming *naming, char *doubt)
+{
+    naming->state = HW_NAMING_ASK;
+    naming->sentence = g_strdup_printf(naming->marker >= 0 ? _("%s Enter twice names it so all the same.")
+                                                           : _("%s Enter twice places it all the same."),
+                                       doubt);
+    g_free(doubt);
+    return naming;
+}
+
+static char *
+dup_status_doubt(const HwRider *rider, const char *bib)
+{
+    switch (rider->status) {
+    case HW_STATUS_DNS:
+        return g_strdup_printf(_("%s did not start (DNS)."), bib);
+    case HW_STATUS_DNF:
+    case HW_STATUS_ABD:
+    case HW_STATUS_OTL:
+    case HW_STATUS_DSQ:
+        return g_strdup_printf(_("The start list has %s as %s."), bib, hw_status_get_word(rider->status));
+    case HW_STATUS_OK:
+    case HW_STATUS_LAP:
+    case HW_STATUS_NOT_SEEN:
+    case HW_STATUS_UNKNOWN:
+    default:
+        return NULL;
+    }
+}
+
+/* What is doubtful about the number itself; NULL: nothing. */
+static char *
+dup_bib_doubt(HwSession *session, HwNaming *naming)
+{
+    const HwDocument *document = hw_session_get_document(session);
+    int used = hw_session_find_bib(session, naming->bib);
+    const HwRider *rider = NULL;
+    bool ambiguous = false;
+
+    if (document->start_list)
+        rider = hw_start_list_find(document->start_list, naming->bib, NULL, &ambiguous);
+    if (rider) {
+        g_free(naming->rider);
+        naming->rider = hw_words_dup_rider(rider);
+    }
+    if (used >= 0 && used != naming->marker) {
+        g_autofree char *time = hw_words_dup_time_of_day(session, marker_cell(session, used));
+
+        return g_strdup_printf(_("%s already stands at %s."), naming->bib, time);
+    }
+    if (ambiguous)
+        return g_strdup_printf(_("%s is in more than one category of the start list."), naming->bib);
+    if (document->start_list && !rider)
+        return g_strdup_printf(_("No rider has number %s in the start list."), naming->bib);
+    return rider ? dup_status_doubt(rider, naming->bib) : NULL;
+}
+
+static char *
+dup_ready_sentence(HwSession *session, const HwNaming *naming)
+{
+    const HwMarker *marker = hw_session_get_marker(session, naming->marker);
+
+    if (!marker)
+        return g_strdup(naming->bib ? _("Enter places a marker with this number at the line.")
+                                    : _("Enter places an unnamed marker at the line."));
+    if (!naming->bib)
+        return g_strdup(_("Enter takes the name off this marker."));
+    if (strcmp(marker->bib, naming->bib) == 0)
+        return g_strdup(_("This marker bears that number already."));
+    if (hw_marker_is_unnamed(marker))
+        return g_strdup_printf(_("Enter names marker %s."), marker->bib);
+    return g_strdup_printf(_("Enter renames marker %s."), marker->bib);
+}
+
+static char *
+dup_near_doubt(HwSession *session, int near, int64_t away_ns)
+{
+    g_autofree char *name = hw_words_dup_marker(hw_session_get_marker(session, near));
+    g_autofree char *away = g_strdup_printf("%.1f", (double)away_ns / 1e6);
+
+    return g_strdup_printf(_("Marker %s stands only %s ms away."), name, away);
+}
+
+HwNaming *
+hw_naming_make(HwSession *session, const char *text, double reach_px)
+{
+    HwNaming *naming = g_new0(HwNaming, 1);
+    g_autofree char *typed = g_strstrip(g_strdup(text));
+    double line = hw_session_get_reading_cell(session);
+    const char *reason;
+    int64_t away_ns;
+    double column;
+    char *doubt = NULL;
+    int n_within, near;
+
+    naming->rider = g_strdup("");
+    naming->bib = *typed && *typed != '?' ? g_strdup(typed) : NULL;
+    naming->marker = hw_naming_find_marker(session, reach_px, &n_within);
+    if (!hw_session_is_in_view(session, line))
+        return refuse(naming,
+                      g_strdup(_("The reading line is out of view: bring it back with ← or →, or click.")));
+    if (n_within > 1 && naming->marker != hw_session_get_selection(session))
+        return refuse(
+            naming,
+            g_strdup_printf(_("%d markers stand at the line: click the one meant, or zoom in."), n_within));
+    reason = hw_words_void_reason(session, line);
+    if (naming->marker < 0 && reason)
+        return refuse(naming, g_strdup_printf(_("There is no picture here: %s. Move the line."), reason));
+    if (naming->marker < 0 && !hw_axis_column(hw_session_get_axis(session), line, &column))
+        return refuse(naming, g_strdup(_("The line stands outside the picture: move it.")));
+    if (naming->bib)
+        doubt = dup_bib_doubt(session, naming);
+    near = naming->marker < 0 ? find_near(session, -1, &away_ns) : -1;
+    if (!doubt && near >= 0)
+        doubt = dup_near_doubt(session, near, away_ns);
+    if (doubt)
+        return ask(naming, doubt);
+    naming->sentence = dup_ready_sentence(session, naming);
+    return naming;
+}
+
+void
+hw_naming_free(HwNaming *naming)
+{
+    if (!naming)
+        return;
+    g_free(naming->bib);
+    g_free(naming->rider);
+    g_free(naming->sentence);
+    g_free(naming);
+}
+
+bool
+hw_naming_equal(const HwNaming *a, const HwNaming *b)
+{
+    return a->state == b->state && a->marker == b->marker && g_strcmp0(a->bib, b->bib) == 0 &&
+           strcmp(a->sentence, b->sentence) == 0;
+}
+
+bool
+hw_naming_commit(HwSession *session, const HwNaming *naming)
+{
+    if (naming->state == HW_NAMING_REFUSED)
+        return false;
+    if (naming->marker >= 0) {
+        hw_session_set_selection(session, naming->marker);
+        hw_session_rename_marker(session, naming->marker, naming->bib);
+        return true;
+    }
+    return hw_session_place_marker(session, hw_session_get_reading_cell(session),
+                                   hw_session_get_hand_row(session), naming->bib) >= 0;
+}
