@@ -180,11 +180,11 @@ decode(Decoder *decoder, HwPlane plane, const char *file, GError **error)
                     "%s does not fit into memory; close other programs and try again.", file);
         return NULL;
     }
+    raster->notes = find_notes(decoder); /* finishing forgets the markers */
     if (!read_rows(decoder, raster)) {
         set_reason(error, decoder, file);
         return NULL;
     }
-    raster->notes = find_notes(decoder);
     if (plane == HW_PLANE_STORED)
         return g_steal_pointer(&raster);
     HwRaster *grey = hw_raster_dup_grey(raster);
