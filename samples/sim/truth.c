@@ -100,6 +100,8 @@ add_marker(GString *s, const SimScenario *sc, const SimRecorder *recorder, const
     add_number(s, t->hub_row, 4);
     add_field(s, rear ? "rear" : "front");
     add_ns(s, sim_recorder_stamped(recorder, column) * 1e-9);
+    add_number(s, t->speed_mps, 4);
+    add_field(s, "0.0001"); /* known to its last decimal */
     add_field(s, sc->passage[t->crossing->passage].name);
     add_field(s, sc->camera);
     add_field(s, "truth");
@@ -113,7 +115,8 @@ add_marker(GString *s, const SimScenario *sc, const SimRecorder *recorder, const
 static char *
 markers_text(const SimScenario *sc, const SimRecorder *recorder, const GArray *truths)
 {
-    GString *s = g_string_new("bib,column,row,edge,time_ns,passage,camera,reader,state,basis,recording\n");
+    GString *s = g_string_new(
+        "bib,column,row,edge,time_ns,speed_mps,u_speed_mps,passage,camera,reader,state,basis,recording\n");
     for (guint i = 0; i < truths->len; i++) {
         const SimTruth *t = &g_array_index(truths, SimTruth, i);
         add_marker(s, sc, recorder, t, FALSE);
