@@ -42,9 +42,10 @@ typedef struct {
     const char *version; /* "provisional" */
     const HwDigest *digest;           /* of the recording; NULL where not known, and it says so */
     const HwCalibration *calibration; /* NULL: the nominal rate stands, and it says so */
-    bool has_start;                   /* the ruler counts from start_ns, else it shows the time of day */
-    int64_t start_ns;                 /* since the epoch */
-    double px_per_column;             /* PNG: 1/64 … 16; both ways of the picture grow with it */
+    double p_order_limit; /* up to this chance of the other order two riders count as told apart */
+    bool has_start;       /* the ruler counts from start_ns, else it shows the time of day */
+    int64_t start_ns;     /* since the epoch */
+    double px_per_column; /* PNG: 1/64 … 16; both ways of the picture grow with it */
 } HwPicture;
 
 /* The whole recording, nothing else known, 1 px a column, "provisional". Texts are the recording's. */
