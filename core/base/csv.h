@@ -22,8 +22,8 @@ typedef struct {
     GPtrArray *rows; /* of HwCsvRow* */
 } HwCsvTable;
 
-/* Reads a file: encoding and delimiter guessed; blank lines passed over. A row with more fields than the
- * header is an error, as is an open quote, an empty file or a header name used twice. */
+/* Reads a file: encoding and delimiter guessed; lines of nothing but blanks passed over. A row with more
+ * fields than the header is an error, as is an open quote, an empty file or a header name used twice. */
 HwCsvTable *hw_csv_table_read(const char *path, GError **error);
 
 /* The same from text in memory. */

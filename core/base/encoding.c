@@ -69,6 +69,9 @@ hw_encoding_to_utf8(const char *data, gsize size, const char *label, HwEncoding 
                     "%s is not readable text (taken for %s); save it as UTF-8.", label, names[found]);
         return NULL;
     }
+    /* A mark once more, as joined files have it, would hide in the first header. */
+    while (g_str_has_prefix(text, "\xEF\xBB\xBF"))
+        memmove(text, text + 3, strlen(text + 3) + 1);
     *encoding = found;
     *had_bom = bom_bytes > 0;
     return g_steal_pointer(&text);

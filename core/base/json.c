@@ -48,10 +48,13 @@ hw_json_parse(const char *text, size_t size, const char *label, GError **error)
     }
     json_error_t fault;
     json_t *root = json_loadb(text, size, JSON_REJECT_DUPLICATES, &fault);
-    if (root == NULL)
+    if (root == NULL) {
+        /* jansson cuts its quotation between any two bytes. */
+        g_autofree char *reason = g_utf8_make_valid(fault.text, -1);
         g_set_error(error, HW_BASE_ERROR, HW_BASE_ERROR_SYNTAX,
                     "%s is not valid JSON at line %d, column %d (%s); mend it there.", label, fault.line,
-                    fault.column, fault.text);
+                    fault.column, reason);
+    }
     return root;
 }
 

@@ -143,6 +143,8 @@ the_encoding_is_guessed_and_shown(void)
     } cases[] = {
         { "UTF-8", "", 0, HW_ENCODING_UTF8, "comma-separated, UTF-8" },
         { "UTF-8", "\xEF\xBB\xBF", 3, HW_ENCODING_UTF8, "comma-separated, UTF-8 with a byte order mark" },
+        { "UTF-8", "\xEF\xBB\xBF\xEF\xBB\xBF", 6, HW_ENCODING_UTF8,
+          "comma-separated, UTF-8 with a byte order mark" },
         { "UTF-16LE", "\xFF\xFE", 2, HW_ENCODING_UTF16_LE,
           "comma-separated, UTF-16LE with a byte order mark" },
         { "UTF-16BE", "\xFE\xFF", 2, HW_ENCODING_UTF16_BE,
@@ -208,6 +210,7 @@ a_header_is_needed_and_unique(void)
 {
     assert_refused("", "is empty");
     assert_refused("\r\n\n,,\n", "is empty");
+    assert_refused(" \t\n;\t\n", "is empty");
     assert_refused("\xEF\xBB\xBF", "is empty");
     assert_refused("bib,name,bib\n1,2,3\n", "“bib” stands twice");
     assert_refused("bib,name, bib \n1,2,3\n", "“bib” stands twice");
