@@ -85,6 +85,18 @@ add_ns(GString *s, double seconds)
     add_field(s, text);
 }
 
+/* Whether a bib is worn in two categories, so that it does not tell the rider. */
+static gboolean
+shares_bibs(const SimScenario *sc)
+{
+    g_autoptr(GHashTable) seen = g_hash_table_new(g_str_hash, g_str_equal);
+    for (guint i = 0; i < sc->entries->len; i++) {
+        if (!g_hash_table_add(seen, g_array_index(sc->entries, SimEntry, i).bib))
+            return TRUE;
+    }
+    return FALSE;
+}
+
 static void
 add_marker(GString *s, const SimScenario *sc, const SimRecorder *recorder, const SimTruth *t, gboolean rear)
 {
@@ -109,6 +121,8 @@ add_marker(GString *s, const SimScenario *sc, const SimRecorder *recorder, const
     /* Who can see next to nothing of the wheel must infer it. */
     add_field(s, t->hidden_deg >= 170 ? "inferred" : "tyre");
     add_field(s, sim_recorder_get_identity(recorder));
+    if (shares_bibs(sc))
+        add_field(s, e->category);
     g_string_append_c(s, '\n');
 }
 
@@ -116,7 +130,8 @@ static char *
 markers_text(const SimScenario *sc, const SimRecorder *recorder, const GArray *truths)
 {
     GString *s = g_string_new(
-        "bib,column,row,edge,time_ns,speed_mps,u_speed_mps,passage,camera,reader,state,basis,recording\n");
+        "bib,column,row,edge,time_ns,speed_mps,u_speed_mps,passage,camera,reader,state,basis,recording");
+    g_string_append(s, shares_bibs(sc) ? ",category\n" : "\n");
     for (guint i = 0; i < truths->len; i++) {
         const SimTruth *t = &g_array_index(truths, SimTruth, i);
         add_marker(s, sc, recorder, t, FALSE);
