@@ -74,7 +74,9 @@ static void
 set_official(const Category *category, HwFinishRow *row)
 {
     const HwRules *rules = category->input->rules;
-    row->has_official = row->has_elapsed && !category->list->places_only;
+    /* A lapped rider's time is of another distance, and who was disqualified has none. */
+    bool bears_time = is_contender(row) || row->status == HW_STATUS_OTL;
+    row->has_official = bears_time && row->has_elapsed && !category->list->places_only;
     if (row->has_official)
         row->official_ns = rules != NULL
                                ? hw_round_elapsed(row->time_ns, rules->precision_ns, rules->rounding)

@@ -133,6 +133,7 @@ lapped_riders_follow_by_laps_then_order(void)
     g_autofree char *places = fixture_dup_places(list);
     g_assert_cmpstr(places, ==, "1:1 2:2 3:3 4:5 5:4");
     g_assert_false(fixture_row(list, "3", NULL)->has_prev);
+    g_assert_false(fixture_row(list, "3", NULL)->has_official); /* a time over fewer laps is no time */
 }
 
 static void
