@@ -125,7 +125,7 @@ static bool
 is_blank(const HwCsvRow *row)
 {
     for (GStrv field = row->fields; *field != NULL; field++) {
-        if ((*field)[strspn(*field, " \t")] != '\0')
+        if ((*field)[strspn(*field, " \t\f\v\r\n")] != '\0')
             return false;
     }
     return true;
