@@ -316,7 +316,8 @@ hw_markers_check_places(const HwMarkers *markers, HwStrip *strip, GError **error
     for (guint i = 0; i < markers->markers->len; i++) {
         const HwMarker *marker = g_ptr_array_index(markers->markers, i);
         int64_t time_ns;
-        if (!hw_time_base_instant(base, marker->column, &time_ns)) {
+        bool on_strip = marker->column < (double)hw_time_base_get_n_columns(base);
+        if (!on_strip || !hw_time_base_instant(base, marker->column, &time_ns)) {
             g_autofree char *where = dup_where(markers, marker);
             g_autofree char *why = dup_why_no_picture(base, marker->column);
             g_set_error(error, HW_RULING_ERROR, HW_RULING_ERROR_MARKERS,
