@@ -1,7 +1,11 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* A view of the strip as pixels, made on the CPU to the device's own pixels: enlarging repeats columns as
- * squares, shrinking averages, so that a rider one column wide stays visible. Voids come out as a flat grey
- * for the painter to hatch. Blocks are decoded as needed, so call it off the main thread. */
+/* A view of the strip as pixels, made on the CPU to the device's own pixels. Time and height each by its own
+ * scale: enlarging repeats the cell that the pixel's middle is in; shrinking averages coded values, each cell
+ * weighed by how much of it lies in the pixel, so that a rider one column wide stays visible (what differs by
+ * d codes in one column changes its pixel by d / cells_per_px). Voids come out as a flat grey for the painter
+ * to hatch; a pixel that holds some void is mixed with that grey. Samples of 16 or fewer than 8 bits are
+ * scaled to 8, alpha stands over black. From 32 cells and 4 rows a pixel on, reduced blocks are used. Blocks
+ * are decoded as needed, so call it off the main thread. */
 #pragma once
 
 #include "core/strip/axis.h"
@@ -13,7 +17,8 @@
 #include <stdbool.h>
 #include <stdint.h>
 
-/* One tone for the whole view; never written back. */
+/* One tone for the whole view, applied after averaging; never written back. A code c, 0 … 1, becomes
+ * (c^(1/gamma) − ½) × contrast + ½ + brightness, held to 0 … 1. */
 typedef struct {
     double brightness; /* −1 … 1, 0 as stored */
     double contrast;   /* 0.1 … 10, 1 as stored */
@@ -33,6 +38,7 @@ bool hw_compose(HwStrip *strip, const HwAxis *axis, const HwViewMap *map, const 
                 uint32_t *pixels, int stride, GCancellable *cancellable, GError **error);
 
 /* As above but only from what the cache holds, without waiting: *holes says whether something was missing
- * (drawn as HW_COMPOSE_VOID). */
+ * (drawn from reduced blocks where these are there, else as HW_COMPOSE_VOID). A block known or found to be
+ * damaged is no hole. */
 bool hw_compose_cached(HwStrip *strip, const HwAxis *axis, const HwViewMap *map, const HwTone *tone,
                        uint32_t *pixels, int stride, bool *holes, GError **error);
