@@ -65,8 +65,9 @@ hw_gap_between(const HwLead *ahead, const HwLead *behind, const HwSetup *setup, 
 
     if (!isnan(behind->speed_mps)) {
         gap.distance_m = behind->speed_mps * (double)gap.gap_ns * 1e-9;
-        double from_speed = isnan(behind->u_speed_mps) ? NAN : size_ns * 1e-9 * behind->u_speed_mps;
-        gap.u_distance_m = hypot(from_speed, behind->speed_mps * gap.u_gap_ns * 1e-9);
+        /* NAN, where u of the speed is not known, carries through. */
+        double u_speed_mps = hypot(behind->u_speed_mps, HW_U_SPEED_ON_THE_WAY_MPS);
+        gap.u_distance_m = hypot(size_ns * 1e-9 * u_speed_mps, behind->speed_mps * gap.u_gap_ns * 1e-9);
     }
 
     double worst_ns = size_ns - worst_bias_ns(ahead, behind, size_ns, setup);

@@ -38,10 +38,14 @@ typedef struct {
     int64_t gap_ns;       /* behind − ahead; ≥ 0 where the order is right */
     double u_gap_ns;      /* standard, of the readings and the rate */
     double distance_m;    /* speed of the one behind × gap; NAN without its speed */
-    double u_distance_m;  /* NAN where the distance is */
+    double u_distance_m;  /* NAN where the distance or u of the speed is not known */
     double p_order_wrong; /* probability that the order is the other way round */
     HwSeparated separated;
 } HwGap;
+
+/* By how much the speed of the one behind can have differed, on the way to the line, from that at the line: a
+ * bike throw changes it by up to ± 2.1 m/s, rectangular (GUM 4.3.7). */
+#define HW_U_SPEED_ON_THE_WAY_MPS 1.2
 
 /* The gap from `ahead` to `behind`. `p_limit`: the largest p_order_wrong at which they count as told apart
  * (0.01 where a rule set names none). Readings are taken as independent and normal (JCGM 100:2008, 5.1.2).

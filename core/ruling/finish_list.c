@@ -7,8 +7,8 @@
 #include <math.h>
 #include <string.h>
 
-/* Decimals of times that no rule set rounds. */
-enum { DECIMALS_UNROUNDED = 9 };
+/* Times that no rule set rounds are shown to the microsecond, finer than any camera reads. */
+enum { DECIMALS_UNROUNDED = 6 };
 
 static void
 row_free(gpointer data)

@@ -6,12 +6,12 @@
 #include <math.h>
 #include <string.h>
 
-enum { N_CELLS = 8 };
+enum { N_CELLS = 9 };
 
 static const char *const heads[N_CELLS] = {
-    "Place", "Bib", "Name", "Team", "Time", "Gap", "To the one before", "Apart"
+    "Place", "Bib", "Name", "Team", "Time", "Gap", "To the one before", "", "Told apart"
 };
-static const bool flush_right[N_CELLS] = { true, true, false, false, true, true, true, false };
+static const bool flush_right[N_CELLS] = { true, true, false, false, true, true, true, true, false };
 
 /* Cells of a terminal: wide characters take two, combining marks none. */
 static glong
@@ -25,7 +25,7 @@ width_of(const char *text)
     return width;
 }
 
-/* "3.812 ± 0.41 ms": the measured gap with U, k = 2. */
+/* "3.812 ± 0.408 ms": the measured gap with U, k = 2. */
 static char *
 dup_measured_gap(const HwGap *gap)
 {
@@ -33,6 +33,17 @@ dup_measured_gap(const HwGap *gap)
     if (isnan(gap->u_gap_ns))
         return g_strdup_printf("%.3f ms, ± unknown", gap_ms);
     return g_strdup_printf("%.3f ± %.3f ms", gap_ms, 2.0 * gap->u_gap_ns * 1e-6);
+}
+
+/* "6.5 ± 1.2 cm", likewise; "" without a speed. */
+static char *
+dup_distance(const HwGap *gap)
+{
+    if (isnan(gap->distance_m))
+        return g_strdup("");
+    if (isnan(gap->u_distance_m))
+        return g_strdup_printf("%.1f cm, ± unknown", gap->distance_m * 100);
+    return g_strdup_printf("%.1f ± %.1f cm", gap->distance_m * 100, 200.0 * gap->u_distance_m);
 }
 
 static char *
@@ -60,6 +71,7 @@ dup_cells(const HwFinishList *list, const HwFinishRow *row)
     cells[i++] = hw_finish_row_dup_time(list, row);
     cells[i++] = hw_finish_row_dup_gap(list, row);
     cells[i++] = row->has_prev ? dup_measured_gap(&row->prev) : g_strdup("");
+    cells[i++] = row->has_prev ? dup_distance(&row->prev) : g_strdup("");
     cells[i++] = g_strdup(row->has_prev ? hw_separated_get_word(row->prev.separated) : "");
     return cells;
 }

@@ -51,13 +51,14 @@ chance_of_the_wrong_order_is_the_normal_tail(void)
 static void
 distance_is_speed_of_the_one_behind_times_the_gap(void)
 {
-    /* d = v·Δt, u(d)² = (Δt·u(v))² + (v·u(Δt))² (GUM 5.1.2): 17 m/s, 4 ms, u(v) 0.05, u(Δt) 0.05 ms. */
+    /* d = v·Δt, u(d)² = (Δt·u(v))² + (v·u(Δt))² (GUM 5.1.2): 17 m/s, 4 ms, u(v) 0.05 and 1.2 for a throw,
+     * u(Δt) 0.05 ms: √((4e-3·1.20104)² + (17·5e-5)²). */
     HwLead a = lead(0, 0.03, 20), b = lead(4, 0.04, 17);
     b.u_speed_mps = 0.05;
     HwSetup setup = setup_measured();
     HwGap gap = hw_gap_between(&a, &b, &setup, 0.01);
     g_assert_cmpfloat_with_epsilon(gap.distance_m, 0.068, 1e-9);
-    g_assert_cmpfloat_with_epsilon(gap.u_distance_m, 0.00087322, 1e-7);
+    g_assert_cmpfloat_with_epsilon(gap.u_distance_m, 0.0048787, 1e-6);
 }
 
 static void
@@ -67,6 +68,10 @@ distance_is_unknown_without_a_speed(void)
     HwSetup setup = hw_setup_unmeasured();
     HwGap gap = hw_gap_between(&a, &b, &setup, 0.01);
     g_assert_true(isnan(gap.distance_m) && isnan(gap.u_distance_m));
+    b.speed_mps = 17; /* how well it is known is not said: no ± for the distance either */
+    gap = hw_gap_between(&a, &b, &setup, 0.01);
+    g_assert_cmpfloat_with_epsilon(gap.distance_m, 0.068, 1e-9);
+    g_assert_true(isnan(gap.u_distance_m));
 }
 
 static void
