@@ -4,7 +4,8 @@
  * weighed by how much of it lies in the pixel, so that a rider one column wide stays visible (what differs by
  * d codes in one column changes its pixel by d / cells_per_px). Voids come out as a flat grey for the painter
  * to hatch; a pixel that holds some void is mixed with that grey. Samples of 16 or fewer than 8 bits are
- * scaled to 8, alpha stands over black. From 32 cells and 4 rows a pixel on, reduced blocks are used. Blocks
+ * scaled to 8, alpha stands over black. From 32 cells and 4 rows a pixel on, reduced blocks are
+ * used: what is sharp may then stand up to 15 columns, less than half a pixel, off its place. Blocks
  * are decoded as needed, so call it off the main thread. */
 #pragma once
 
