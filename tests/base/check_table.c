@@ -6,7 +6,7 @@
 HwCsvTable *
 check_table_read(const char *name)
 {
-    g_autofree char *path = g_test_build_filename(G_TEST_DIST, "tests", "base", "data", name, NULL);
+    g_autofree char *path = g_test_build_filename(G_TEST_DIST, "base", "data", name, NULL);
     g_autofree char *text = NULL;
     g_autoptr(GError) error = NULL;
     g_file_get_contents(path, &text, NULL, &error);
