@@ -1,6 +1,6 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 /* One decode a block, a bound on bytes, failures kept. Run it under the thread sanitizer too
- * (meson setup -Db_sanitize=thread). */
+ * (meson setup -Db_sanitize=thread, and G_SLICE=always-malloc: GLib's own allocator is not built for it). */
 #include "core/strip/block_cache.h"
 #include "core/strip/strip_error.h"
 
