@@ -102,7 +102,9 @@ const HwBlock *hw_recording_get_block(const HwRecording *recording, guint index)
  * whose message is the void's reason ("block-00003.png is missing"). */
 int hw_recording_open_file(const HwRecording *recording, const char *file, GError **error);
 
-/* SHA-256 of epoch text, LF, camera, LF, first block's file name, LF, its first stamp, LF. */
+/* SHA-256 of epoch text, LF, camera, LF, first block's file name, LF, its first_ns, LF. A first block with a
+ * `times` file has no first_ns: nothing stands there, so that a damaged times file leaves the identity as it
+ * is. */
 const HwDigest *hw_recording_get_identity(const HwRecording *recording);
 
 /* The first 16 hex digits of the identity, as markers carry them. Borrowed. */

@@ -105,10 +105,14 @@ static bool
 read_rate(const json_t *object, const char *where, HwScan *scan, GError **error)
 {
     double rate_hz = 0.0;
-    if (!hw_json_get_double(object, "rate_hz", HW_JSON_REQUIRED, 0.0, HW_MAX_RATE_HZ, where, &rate_hz, error))
+    if (!hw_json_get_double(object, "rate_hz", HW_JSON_REQUIRED, -G_MAXDOUBLE, G_MAXDOUBLE, where, &rate_hz,
+                            error))
         return false;
-    if (rate_hz <= 0.0)
-        return refuse(error, "%s: “rate_hz” is 0; it must lie above 0 and up to %d.", where, HW_MAX_RATE_HZ);
+    if (rate_hz <= 0.0 || rate_hz > HW_MAX_RATE_HZ) {
+        g_autofree char *shown = hw_number_dup_double(rate_hz);
+        return refuse(error, "%s: “rate_hz” is %s; it must lie above 0 and up to %d.", where, shown,
+                      HW_MAX_RATE_HZ);
+    }
     if (!hw_number_nine_decimals(rate_hz, &scan->rate_nhz) || scan->rate_nhz < 1)
         return refuse(error, "%s: “rate_hz” has more than 9 decimals; write it with at most 9.", where);
     scan->rate_hz = (double)scan->rate_nhz / 1e9;

@@ -35,7 +35,10 @@ typedef enum {
     HW_VOID_DAMAGED      /* a block that cannot be read */
 } HwVoidKind;
 
-/* A stretch of time without readable columns. */
+/* A stretch of time without readable columns. Voids and runs of one clock follow each other without gap or
+ * overlap. A damaged block that nothing places in time follows the former block; at the start, it ends where
+ * the next begins. Where nothing counts it either, it reaches to the next block, and as the first or last it
+ * is a problem only. */
 typedef struct {
     HwVoidKind kind;
     int64_t after_column; /* this many columns stand before it */
@@ -45,7 +48,9 @@ typedef struct {
     const char *reason; /* a clause for people, without a final stop */
 } HwVoid;
 
-/* An evenly stamped block whose stamps imply another number of columns than it has. */
+/* An evenly stamped block whose stamps imply another number of columns than it has, by the median rate of all
+ * such readable blocks (of an even number of them, the one of the middle two nearer to the nominal rate). A
+ * median more than 100 ppm off the nominal rate is a problem said once. */
 typedef struct {
     guint block;
     int64_t first_col;
