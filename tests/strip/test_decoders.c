@@ -84,8 +84,9 @@ run(const char *const *words, size_t *size)
     g_assert_no_error(error);
     g_assert_true(g_subprocess_get_successful(process));
     char *text = g_malloc(g_bytes_get_size(output) + 1);
-    memcpy(text, g_bytes_get_data(output, NULL), g_bytes_get_size(output));
     *size = g_bytes_get_size(output);
+    if (*size > 0)
+        memcpy(text, g_bytes_get_data(output, NULL), *size);
     text[*size] = '\0';
     return text;
 }
