@@ -154,11 +154,14 @@ describe_ranked(HwEntry *entry, const HwPicture *picture, bool with_category)
         row->has_prev && before != NULL ? g_strdup_printf("to %s: %s", before->bib, to_before) : g_strdup("");
     entry->winner =
         *to_winner != '\0' && before != winner ? g_strdup_printf("to winner: %s", to_winner) : g_strdup("");
-    entry->cells[HW_CELL_PLACE] = g_strdup(entry->place);
+    entry->cells[HW_CELL_PLACE] = g_strdup(place);
     entry->cells[HW_CELL_NAME] = g_strdup(row->name);
-    entry->cells[HW_CELL_TEAM] = g_strdup(row->team);
+    bool categorised = with_category && *row->category != '\0';
+    entry->cells[HW_CELL_TEAM] =
+        categorised ? g_strjoin(*row->team != '\0' ? " · " : "", row->category, row->team, NULL)
+                    : g_strdup(row->team);
     entry->cells[HW_CELL_TIME] = hw_finish_row_dup_time(picture->list, row);
-    entry->cells[HW_CELL_GAP] = hw_finish_row_dup_gap(picture->list, row);
+    entry->cells[HW_CELL_GAP] = row->rank > 1 ? hw_finish_row_dup_gap(picture->list, row) : g_strdup("");
     entry->cells[HW_CELL_BEFORE] = g_strdup(to_before);
     entry->cells[HW_CELL_WINNER] = g_strdup(to_winner);
     entry->cells[HW_CELL_APART] = g_strdup(row->has_prev ? apart_words(row->prev.separated) : "");
@@ -309,9 +312,13 @@ hw_entries_dup_pair(const HwPicture *picture, const HwEntry *a, const HwEntry *b
     }
     g_string_append_printf(text, " (measured, k" NBSP "=" NBSP "2). Told apart by this recording: %s",
                            apart_words(gap.separated));
+    if (gap.separated == HW_SEPARATED_NOT_ESTABLISHED)
+        g_string_append_printf(text, ", as %s was not measured",
+                               setup.rate_known ? "the camera’s alignment"
+                                                : "the camera’s alignment or scan rate");
     if (!isnan(gap.p_order_wrong)) {
         g_autofree char *chance = dup_chance(gap.p_order_wrong);
-        g_string_append_printf(text, " (chance of the other order: %s).", chance);
+        g_string_append_printf(text, " (chance of the other order by the readings alone: %s).", chance);
     } else {
         g_string_append(text, ".");
     }

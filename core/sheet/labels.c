@@ -20,10 +20,11 @@ enum { HW_MAX_LINES = 2 };
 typedef struct {
     const HwEntry *entry;
     double stem_x; /* left edge of the hairline, in the view */
-    double x, y, width;
+    double x, y, width, height;
     int cluster; /* −1: stands by itself */
     PangoLayout *bib;
     PangoLayout *place;
+    double short_width; /* without lines */
     PangoLayout *lines[HW_MAX_LINES];
 } Label;
 
@@ -76,23 +77,44 @@ shape_label(const HwLabels *labels, Label *label)
     label->bib = hw_text_layout(labels->context, &bold, entry->bib, 90);
     g_autofree char *place = entry->rear ? g_strdup("rear tyre") : g_strdup(entry->place);
     label->place = hw_text_layout(labels->context, &bold, place, 90);
-    label->width = PAD_PX + width_of(label->bib) + 2 * PAD_PX;
+    label->short_width = PAD_PX + width_of(label->bib) + 2 * PAD_PX;
     if (*place != '\0')
-        label->width += width_of(label->place) + 2 * PAD_PX;
+        label->short_width += width_of(label->place) + 2 * PAD_PX;
 }
 
-/* The gaps below bib and place; the width of all three. */
+/* The gaps below bib and place. */
 static void
 shape_lines(const HwLabels *labels, Label *label)
 {
     HwType type = { labels->ink.font_family, labels->ink.font_px * 0.92, false, true };
     const char *texts[HW_MAX_LINES] = { label->entry->before, label->entry->winner };
-    for (int i = 0; i < HW_MAX_LINES; i++) {
-        if (*texts[i] == '\0')
-            continue;
-        label->lines[i] = hw_text_layout(labels->context, &type, texts[i], FULL_MAX_WIDTH - 2 * PAD_PX);
-        label->width = MAX(label->width, width_of(label->lines[i]) + 2 * PAD_PX);
+    for (int i = 0; i < HW_MAX_LINES; i++)
+        if (*texts[i] != '\0')
+            label->lines[i] = hw_text_layout(labels->context, &type, texts[i], FULL_MAX_WIDTH - 2 * PAD_PX);
+}
+
+/* Leaves each label at most n lines. Returns the height of a row. */
+static double
+set_lines(HwLabels *labels, int n_lines)
+{
+    double tallest = HEAD_PX;
+    for (guint i = 0; i < labels->labels->len; i++) {
+        Label *label = label_at(labels, i);
+        label->width = label->short_width;
+        label->height = HEAD_PX;
+        for (int line = 0; line < HW_MAX_LINES; line++) {
+            if (line >= n_lines)
+                g_clear_object(&label->lines[line]);
+            if (label->lines[line] == NULL)
+                continue;
+            label->width = MAX(label->width, width_of(label->lines[line]) + 2 * PAD_PX);
+            label->height += LINE_PX;
+        }
+        if (label->height > HEAD_PX)
+            label->height += 2;
+        tallest = MAX(tallest, label->height);
     }
+    return tallest + GAP_PX;
 }
 
 static bool
@@ -111,6 +133,7 @@ take_entries(HwLabels *labels, const GPtrArray *entries, const HwAxis *axis, con
         if (label.stem_x + labels->ink.hairline_px < 0 || label.stem_x > map->width_px)
             continue;
         shape_label(labels, &label);
+        shape_lines(labels, &label);
         g_array_append_val(labels->labels, label);
     }
 }
@@ -188,24 +211,12 @@ hw_labels_new(PangoContext *context, const HwInk *ink, const GPtrArray *entries,
     labels->clusters = g_array_new(FALSE, FALSE, sizeof(Cluster));
     take_entries(labels, entries, axis, map);
 
-    g_autofree double *short_widths = g_new(double, MAX(labels->labels->len, 1));
-    bool has_lines = false;
-    for (guint i = 0; i < labels->labels->len; i++) {
-        Label *label = label_at(labels, i);
-        short_widths[i] = label->width;
-        shape_lines(labels, label);
-        has_lines |= label->lines[0] != NULL || label->lines[1] != NULL;
+    /* Both gaps where there is room, else the one to the rider before, else bib and place alone. */
+    for (int n_lines = HW_MAX_LINES; n_lines >= 0; n_lines--) {
+        double row = set_lines(labels, n_lines);
+        if (arrange(labels, row, max_height, n_lines == 0, highlight))
+            break;
     }
-    double full = HEAD_PX + (has_lines ? 2 * LINE_PX + 3 : 0) + GAP_PX;
-    if (arrange(labels, full, max_height, !has_lines, highlight))
-        return labels;
-    for (guint i = 0; i < labels->labels->len; i++) {
-        Label *label = label_at(labels, i);
-        label->width = short_widths[i];
-        for (int line = 0; line < HW_MAX_LINES; line++)
-            g_clear_object(&label->lines[line]);
-    }
-    arrange(labels, HEAD_PX + GAP_PX, max_height, true, highlight);
     return labels;
 }
 
@@ -262,7 +273,7 @@ static void
 draw_label(const HwLabels *labels, cairo_t *cr, const Label *label)
 {
     const HwInk *ink = &labels->ink;
-    cairo_rectangle(cr, label->x, label->y, label->width, labels->row_height - GAP_PX);
+    cairo_rectangle(cr, label->x, label->y, label->width, label->height);
     hw_colour_set(cr, &ink->paper);
     cairo_fill_preserve(cr);
     hw_colour_set(cr, &ink->rule);
@@ -339,7 +350,7 @@ hw_labels_get_box(const HwLabels *labels, guint i, double *x, double *y, double 
         *x = label->x;
         *y = label->y;
         *width = label->width;
-        *height = labels->row_height - GAP_PX;
+        *height = label->height;
         return true;
     }
     if (i >= labels->clusters->len)

@@ -12,8 +12,9 @@
 #define PAGE_HEIGHT_PT 595.28
 #define PT_PER_UNIT 0.7
 #define MAX_PICTURE 330.0
-#define LEAST_RAIL 70.0
-#define AROUND_PICTURE 76.0 /* ruler, scale and gaps */
+#define LEAST_RAIL 110.0
+#define TABLE_BELOW 4       /* rows that still go under the picture */
+#define AROUND_PICTURE 80.0 /* ruler, scale and gaps */
 #define OVERLAP 0.05
 #define MAX_PAGES 5000
 
@@ -73,6 +74,45 @@ count_table_rows(const HwSubject *subject)
     return n;
 }
 
+static char *
+dup_page(const Book *book, int page)
+{
+    return g_strdup_printf("page %d of %d", page + 1, book->n_pages);
+}
+
+static char *
+dup_part(const Book *book, int page)
+{
+    if (book->subject->n_views > 1)
+        return g_strdup("every column shown, both at one scale");
+    if (book->n_picture_pages == 1)
+        return g_strdup("every column shown");
+    return g_strdup_printf("every column shown; part %d of %d, parts overlap", page + 1,
+                           book->n_picture_pages);
+}
+
+static HwPlateSpec
+picture_spec(const Book *book, int page, const char *number, const char *zoom)
+{
+    const HwSubject *subject = book->subject;
+    HwPlateSpec spec = bare_spec();
+    spec.height = page_height();
+    spec.px_per_cell = spec.px_per_row = book->px_per_cell;
+    spec.n_views = subject->n_views;
+    spec.page = number;
+    spec.zoom = zoom;
+    spec.max_rail = book->picture_room - subject->n_rows * book->px_per_cell;
+    spec.with_table = book->table_below;
+    double step = MAX(1, book->cells_per_page - ceil(OVERLAP * book->cells_per_page));
+    for (int i = 0; i < subject->n_views; i++) {
+        const HwSubjectView *view = &subject->views[i];
+        spec.n_cells[i] = MIN(view->n_cells, book->cells_per_page);
+        double last_start = view->first_cell + view->n_cells - spec.n_cells[i];
+        spec.first_cell[i] = MIN(view->first_cell + page * step, last_start);
+    }
+    return spec;
+}
+
 /* How much of the strip a page holds, and how many pages that makes. */
 static bool
 plan(Book *book, GError **error)
@@ -82,6 +122,10 @@ plan(Book *book, GError **error)
     g_autoptr(HwPlate) frame = hw_plate_new(subject, book->context, &book->ink, &spec);
     double inner = page_width() - 2 * HW_PLATE_MARGIN;
     book->picture_room = page_height() - hw_plate_get_height(frame) - AROUND_PICTURE;
+    book->n_rows = count_table_rows(subject);
+    bool short_table = book->n_rows > 0 && book->n_rows <= TABLE_BELOW;
+    if (short_table)
+        book->picture_room -= 60 + 19.0 * book->n_rows;
     double picture = CLAMP(book->picture_room - LEAST_RAIL, 60, MAX_PICTURE);
     book->px_per_cell = MIN(picture / subject->n_rows, 1.25);
     double widest = 0;
@@ -103,8 +147,13 @@ plan(Book *book, GError **error)
         }
         book->n_picture_pages += MAX(0, (int)more);
     }
-    book->n_rows = count_table_rows(subject);
-    book->table_below = book->n_picture_pages == 1 && book->n_rows > 0 && book->n_rows <= 4;
+    book->table_below = book->n_picture_pages == 1 && short_table;
+    if (book->table_below) {
+        /* Only whole: what has no room goes to a page of its own. */
+        HwPlateSpec whole = picture_spec(book, 0, "", "");
+        g_autoptr(HwPlate) trial = hw_plate_new(subject, book->context, &book->ink, &whole);
+        book->table_below = hw_plate_get_n_table_rows(trial) == book->n_rows;
+    }
     book->n_pages = book->n_picture_pages;
     if (book->n_rows > 0 && !book->table_below) {
         spec.height = page_height();
@@ -114,12 +163,6 @@ plan(Book *book, GError **error)
         book->n_pages += (int)((book->n_rows + book->rows_per_page - 1) / book->rows_per_page);
     }
     return true;
-}
-
-static char *
-dup_page(const Book *book, int page)
-{
-    return g_strdup_printf("page %d of %d", page + 1, book->n_pages);
 }
 
 /* The columns of a view, one pixel each, put where the plate wants them. */
@@ -183,31 +226,9 @@ show_plate(Book *book, const HwPlateSpec *spec, GError **error)
 static bool
 show_picture_page(Book *book, int page, GError **error)
 {
-    const HwSubject *subject = book->subject;
-    HwPlateSpec spec = bare_spec();
     g_autofree char *number = dup_page(book, page);
-    spec.height = page_height();
-    spec.px_per_cell = spec.px_per_row = book->px_per_cell;
-    spec.n_views = subject->n_views;
-    spec.page = number;
-    spec.max_rail = book->picture_room - subject->n_rows * book->px_per_cell;
-    if (book->table_below) {
-        spec.with_table = true;
-        spec.max_rail = MAX(LEAST_RAIL / 2, spec.max_rail - 60 - 19.0 * book->n_rows);
-    }
-    double step = MAX(1, book->cells_per_page - ceil(OVERLAP * book->cells_per_page));
-    for (int i = 0; i < subject->n_views; i++) {
-        const HwSubjectView *view = &subject->views[i];
-        spec.n_cells[i] = MIN(view->n_cells, book->cells_per_page);
-        double last_start = view->first_cell + view->n_cells - spec.n_cells[i];
-        spec.first_cell[i] = MIN(view->first_cell + page * step, last_start);
-    }
-    g_autofree char *zoom = subject->n_views > 1 ? g_strdup("every column shown, both at one scale")
-                            : book->n_picture_pages == 1
-                                ? g_strdup("every column shown")
-                                : g_strdup_printf("every column shown; part %d of %d, parts overlap",
-                                                  page + 1, book->n_picture_pages);
-    spec.zoom = zoom;
+    g_autofree char *zoom = dup_part(book, page);
+    HwPlateSpec spec = picture_spec(book, page, number, zoom);
     return show_plate(book, &spec, error);
 }
 

@@ -12,8 +12,9 @@
 #include <math.h>
 
 #define TEXT_MAX_WIDTH 1560.0
+#define RIGHT_MAX_WIDTH 2200.0
 #define RULER_PX 24.0
-#define SCALE_PX 34.0
+#define SCALE_PX 38.0
 #define VIEW_GAP_PX 24.0
 #define TITLE_PX 22.0
 #define WARNING_PAD_PX 5.0
@@ -35,8 +36,9 @@ struct HwPlate {
     char *page;
     char *zoom;
     double width, height;
-    double text_width;
-    double top_y; /* below heading and warnings */
+    double text_width; /* of lines that are read */
+    double right_x;    /* where what stands to the right ends */
+    double top_y;      /* below heading and warnings */
     View views[HW_MAX_VIEWS];
     double ruler_y;
     double scale_y;
@@ -190,6 +192,7 @@ hw_plate_new(const HwSubject *subject, PangoContext *context, const HwInk *ink, 
     double inner = MAX(MAX(width_of_views(spec), spec->width - 2 * HW_PLATE_MARGIN), HW_TABLE_MIN_WIDTH);
     plate->width = inner + 2 * HW_PLATE_MARGIN;
     plate->text_width = MIN(inner, TEXT_MAX_WIDTH);
+    plate->right_x = HW_PLATE_MARGIN + MIN(inner, RIGHT_MAX_WIDTH);
     plate->top_y = shape_head(plate);
     double y = place_views(plate, plate->top_y);
     double foot = shape_foot(plate);
@@ -265,7 +268,7 @@ draw_version(const HwPlate *plate, cairo_t *cr)
     g_autoptr(PangoLayout) layout = shape(plate, 15, true, version, 220, 1);
     double width, height;
     hw_text_size(layout, &width, &height);
-    double x = HW_PLATE_MARGIN + plate->text_width - width - 20;
+    double x = plate->right_x - width - 20;
     cairo_rectangle(cr, x + 0.75, HW_PLATE_MARGIN + 0.75, width + 18.5, height + 8.5);
     hw_colour_set(cr, &plate->ink.text);
     cairo_set_line_width(cr, 1.5);
@@ -399,7 +402,7 @@ draw_scale(const HwPlate *plate, cairo_t *cr)
     x = draw_scale_bar(plate, cr, x + 36, plate->scale_y);
     g_autofree char *text = g_strdup_printf("%s · %s", plate->subject->scale, plate->zoom);
     double room = HW_PLATE_MARGIN + plate->text_width - x - 28;
-    g_autoptr(PangoLayout) layout = shape(plate, 12, false, text, MAX(room, 60), 1);
+    g_autoptr(PangoLayout) layout = shape(plate, 12, false, text, MAX(room, 200), 2);
     hw_colour_set(cr, &plate->ink.text);
     hw_text_draw(cr, layout, x + 28, plate->scale_y + 4);
 }
@@ -440,7 +443,7 @@ draw_foot(const HwPlate *plate, cairo_t *cr)
     g_autoptr(PangoLayout) layout = shape(plate, 11, true, text, 240, 1);
     double width;
     hw_text_size(layout, &width, NULL);
-    hw_text_draw(cr, layout, HW_PLATE_MARGIN + plate->text_width - width, y);
+    hw_text_draw(cr, layout, plate->right_x - width, y);
 }
 
 void

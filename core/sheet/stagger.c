@@ -77,8 +77,6 @@ place_label(Stagger *stagger, HwStaggerLabel *label)
             best = row;
         }
     }
-    if (best < 0 && label->keep)
-        best = stagger->n_rows - 1;
     label->row = best;
     label->u = u;
 }

@@ -9,7 +9,7 @@
 typedef struct {
     double pole;  /* u of the pole; labels come in any order */
     double width; /* of the label */
-    bool keep;    /* never goes into a cluster (the selected one) */
+    bool keep;    /* placed before the others (the selected one) */
     /* results: */
     int row;     /* from 0, the row farthest from the picture; −1: in a cluster */
     double u;    /* earlier edge of the label */
@@ -27,7 +27,7 @@ typedef struct {
 
 /* Places n labels into at most n_rows rows between u = 0 and u = length, `gap` between neighbours. A pole
  * goes behind as few labels as can be. `cluster_width` is the room of "+n". Returns the clusters (GArray of
- * HwStaggerCluster, owned by the caller). Two labels with `keep` that leave no room for each other overlap no
- * other label, but may stand on one another where rows are full. */
+ * HwStaggerCluster, owned by the caller). Labels with `keep` are placed first, so that one of them goes into
+ * a cluster only where others with `keep` take all the room */
 GArray *hw_stagger(HwStaggerLabel *labels, int n, int n_rows, double length, double gap,
                    double cluster_width);

@@ -87,6 +87,14 @@ find_of_pair(HwSubject *subject, const char *bib, const HwEntry **entry, GError 
     return false;
 }
 
+/* Time in which two lengths of a bicycle cross, by its speed where that was measured. */
+static double
+room_behind_ns(const HwEntry *entry)
+{
+    double speed_mps = entry->finish != NULL ? entry->finish->speed_mps : NAN;
+    return speed_mps > 1 ? MIN(4.0 / speed_mps * 1e9, 2e9) : (double)BEHIND_NS;
+}
+
 /* Both riders with their markers at the same place of equally wide views, so that they can be compared. */
 static bool
 view_pair(HwSubject *subject, GError **error)
@@ -101,7 +109,8 @@ view_pair(HwSubject *subject, GError **error)
         return false;
     }
     double period_ns = hw_time_base_get_period_ns(hw_strip_get_time_base(subject->strip));
-    double before = ceil((double)BEFORE_NS / period_ns), behind = ceil((double)BEHIND_NS / period_ns);
+    double behind_ns = MAX(room_behind_ns(pair[0]), room_behind_ns(pair[1]));
+    double behind = ceil(behind_ns / period_ns), before = ceil(behind_ns / 3 / period_ns);
     subject->n_views = 2;
     for (int i = 0; i < 2; i++) {
         const HwFinishRow *row = pair[i]->finish;
@@ -223,14 +232,22 @@ check_blocks(HwSubject *subject, guint *n_shown, HwProgress progress, gpointer u
     return true;
 }
 
-static void
-drop_entries_out_of_view(HwSubject *subject)
+/* A pair is shown with its own markers only, on both sides: what lies between them is the matter. */
+static bool
+is_shown(const HwSubject *subject, const HwEntry *entry)
 {
-    for (guint i = subject->entries->len; i-- > 0;) {
-        const HwEntry *entry = g_ptr_array_index(subject->entries, i);
-        if (!cell_in_view(subject, hw_axis_position(subject->axis, entry->column)))
+    if (subject->highlight[0] != NULL && strcmp(entry->bib, subject->highlight[0]) != 0 &&
+        strcmp(entry->bib, subject->highlight[1]) != 0)
+        return false;
+    return cell_in_view(subject, hw_axis_position(subject->axis, entry->column));
+}
+
+static void
+drop_entries_not_shown(HwSubject *subject)
+{
+    for (guint i = subject->entries->len; i-- > 0;)
+        if (!is_shown(subject, g_ptr_array_index(subject->entries, i)))
             g_ptr_array_remove_index(subject->entries, i);
-    }
 }
 
 static void
@@ -298,15 +315,32 @@ dup_scale(const HwSubject *subject)
     g_autofree char *column_ms = hw_number_dup_fixed(hw_time_base_get_period_ns(base) * 1e-6, 4);
     g_autofree char *nominal = hw_number_dup_double(scan->rate_hz);
     if (calibration == NULL)
-        return g_strdup_printf("1 column = %s" NBSP "ms (nominal %s" NBSP "columns a second, not calibrated)",
-                               column_ms, nominal);
+        return g_strdup_printf("1 column = %s" NBSP "ms (nominal %s" NBSP "Hz, not calibrated)", column_ms,
+                               nominal);
     double expanded = 2 * calibration->u_rate_hz;
     int decimals = expanded > 0 ? (int)CLAMP(1 - floor(log10(expanded)), 0, 6) : 3;
     g_autofree char *rate = hw_number_dup_fixed(calibration->rate_hz, decimals);
     g_autofree char *spread = hw_number_dup_fixed(expanded, decimals);
-    return g_strdup_printf("1 column = %s" NBSP "ms nominal; calibrated %s" NBSP "±" NBSP "%s" NBSP
-                           "columns a second",
+    return g_strdup_printf("1 column = %s" NBSP "ms nominal; calibrated %s" NBSP "±" NBSP "%s" NBSP "Hz",
                            column_ms, rate, spread);
+}
+
+/* What the picture knows of the recording's blocks. */
+static char *
+dup_checked(const HwSubject *subject, guint n_shown)
+{
+    guint n_blocks = hw_strip_get_n_blocks(subject->strip), n_damaged = 0;
+    for (guint i = 0; i < n_blocks; i++)
+        n_damaged += block_in_view(subject, i) && hw_strip_get_damage(subject->strip, i) != NULL;
+    GString *text = g_string_new(NULL);
+    if (n_shown < n_blocks)
+        g_string_append_printf(text, "%u of %u blocks are in view, the others were not checked", n_shown,
+                               n_blocks);
+    else
+        g_string_append_printf(text, "all %u blocks are in view", n_blocks);
+    if (n_damaged > 0)
+        g_string_append_printf(text, "; %u of those in view cannot be read", n_damaged);
+    return g_string_free(text, FALSE);
 }
 
 static void
@@ -314,7 +348,6 @@ write_foot(HwSubject *subject, guint n_shown)
 {
     const HwPicture *picture = &subject->picture;
     HwRecording *recording = hw_strip_get_recording(subject->strip);
-    guint n_blocks = hw_strip_get_n_blocks(subject->strip);
     g_autofree char *epoch = hw_instant_dup_text(hw_recording_get_epoch(recording), 3);
     add(subject->foot,
         g_strdup_printf("%s%s%s · recording “%s”, camera %s, epoch %s, identity %s", subject->heading,
@@ -324,12 +357,7 @@ write_foot(HwSubject *subject, guint n_shown)
     add(subject->foot, picture->rules != NULL && *picture->rules != '\0'
                            ? g_strdup_printf("Rule set: %s", picture->rules)
                            : g_strdup("No rule set applied: measured order, not rounded."));
-    g_autofree char *checked =
-        n_shown < n_blocks
-            ? g_strdup_printf("%u of %u blocks are shown and were decoded; the others were not "
-                              "checked",
-                              n_shown, n_blocks)
-            : g_strdup_printf("all %u blocks were decoded", n_blocks);
+    g_autofree char *checked = dup_checked(subject, n_shown);
     add(subject->foot, picture->digest != NULL
                            ? g_strdup_printf("Recording SHA-256 %s · %s", picture->digest->hex, checked)
                            : g_strdup_printf("Recording: digest not known · %s", checked));
@@ -365,7 +393,7 @@ hw_subject_new(const HwPicture *picture, HwProgress progress, gpointer user_data
         !choose_views(subject, error))
         return NULL;
     subject->n_rows = hw_strip_get_n_rows(subject->strip);
-    drop_entries_out_of_view(subject);
+    drop_entries_not_shown(subject);
     subject->heading =
         g_strdup(picture->event != NULL && *picture->event != '\0' ? picture->event : "Finish picture");
     subject->subheading = g_strdup(picture->passage != NULL ? picture->passage : "");

@@ -10,28 +10,31 @@
 #define HEAD_PX 22.0
 #define BETWEEN_PX 32.0
 #define CELL_GAP_PX 10.0
+#define AFTER_FIGURES_PX 14.0 /* text that stands right of figures */
 
 static const struct {
     const char *head;
     double width;
     bool flush_right;
 } columns[HW_N_CELLS] = {
-    [HW_CELL_PLACE] = { "Place", 68, true },
+    [HW_CELL_PLACE] = { "Place", 58, true },
     [HW_CELL_BIB] = { "Bib", 52, true },
     [HW_CELL_NAME] = { "Name", 182, false },
     [HW_CELL_TEAM] = { "Team", 150, false },
-    [HW_CELL_TIME] = { "Time", 108, true },
+    [HW_CELL_TIME] = { "Time", 104, true },
     [HW_CELL_GAP] = { "Gap", 76, true },
     [HW_CELL_BEFORE] = { "To the one before", 150, true },
     [HW_CELL_WINNER] = { "To the winner", 150, true },
-    [HW_CELL_APART] = { "Told apart", 120, false },
+    [HW_CELL_APART] = { "Told apart", 134, false },
 };
 
 struct HwTable {
     PangoContext *context;
     HwInk ink;
-    GPtrArray *rows; /* const HwEntry* */
-    guint n_blocks;  /* side by side */
+    GPtrArray *rows;        /* const HwEntry* */
+    bool shown[HW_N_CELLS]; /* columns that say something in some row of the whole table */
+    double width;           /* of a block */
+    guint n_blocks;         /* side by side */
     guint rows_per_block;
 };
 
@@ -43,7 +46,14 @@ hw_table_new(PangoContext *context, const HwInk *ink, const GPtrArray *entries, 
     table->context = g_object_ref(context);
     table->ink = *ink;
     table->rows = g_ptr_array_new();
-    table->n_blocks = MAX(1, (guint)((width + BETWEEN_PX) / (HW_TABLE_MIN_WIDTH + BETWEEN_PX)));
+    for (guint i = 0; i < entries->len; i++)
+        for (int cell = 0; cell < HW_N_CELLS; cell++) {
+            const char *text = ((const HwEntry *)g_ptr_array_index(entries, i))->cells[cell];
+            table->shown[cell] |= text != NULL && *text != '\0';
+        }
+    for (int cell = 0; cell < HW_N_CELLS; cell++)
+        table->width += table->shown[cell] ? columns[cell].width : 0;
+    table->n_blocks = MAX(1, (guint)((width + BETWEEN_PX) / (table->width + BETWEEN_PX)));
     guint fit = (guint)MAX(0, (max_height - HEAD_PX) / ROW_PX);
     guint passed = 0;
     for (guint i = 0; i < entries->len; i++) {
@@ -87,14 +97,17 @@ draw_cells(const HwTable *table, cairo_t *cr, const char *const *cells, double y
     HwType type = { table->ink.font_family, table->ink.font_px, bold, true };
     double x = 0;
     for (int i = 0; i < HW_N_CELLS; i++) {
-        double room = columns[i].width - CELL_GAP_PX;
+        double room = columns[i].width - CELL_GAP_PX - (i == HW_CELL_APART ? AFTER_FIGURES_PX : 0);
+        if (!table->shown[i])
+            continue;
         if (cells[i] != NULL && *cells[i] != '\0') {
             HwType cell_type = type;
             cell_type.bold = bold || i == HW_CELL_BIB;
             g_autoptr(PangoLayout) layout = hw_text_layout(table->context, &cell_type, cells[i], room);
             double width, text_height;
             hw_text_size(layout, &width, &text_height);
-            hw_text_draw(cr, layout, columns[i].flush_right ? x + room - width : x,
+            double text_x = columns[i].flush_right ? x + room - width : x;
+            hw_text_draw(cr, layout, i == HW_CELL_APART ? text_x + AFTER_FIGURES_PX : text_x,
                          y + (height - text_height) / 2);
         }
         x += columns[i].width;
@@ -110,7 +123,7 @@ draw_block(const HwTable *table, cairo_t *cr, guint first, guint n)
         heads[i] = columns[i].head;
     hw_colour_set(cr, &ink->text);
     draw_cells(table, cr, heads, 0, HEAD_PX - 2, true);
-    cairo_rectangle(cr, 0, HEAD_PX - 1.5, HW_TABLE_MIN_WIDTH - CELL_GAP_PX, 1);
+    cairo_rectangle(cr, 0, HEAD_PX - 1.5, table->width - CELL_GAP_PX, 1);
     cairo_fill(cr);
     for (guint i = 0; i < n; i++) {
         const HwEntry *entry = g_ptr_array_index(table->rows, first + i);
@@ -120,7 +133,7 @@ draw_block(const HwTable *table, cairo_t *cr, guint first, guint n)
         HwColour faint = ink->rule;
         faint.alpha = 0.35;
         hw_colour_set(cr, &faint);
-        cairo_rectangle(cr, 0, y + ROW_PX - 0.5, HW_TABLE_MIN_WIDTH - CELL_GAP_PX, 0.5);
+        cairo_rectangle(cr, 0, y + ROW_PX - 0.5, table->width - CELL_GAP_PX, 0.5);
         cairo_fill(cr);
     }
 }
@@ -131,8 +144,8 @@ hw_table_draw(const HwTable *table, cairo_t *cr)
     double low, top, high, bottom;
     cairo_clip_extents(cr, &low, &top, &high, &bottom);
     for (guint block = 0; block * table->rows_per_block < table->rows->len; block++) {
-        double x = block * (HW_TABLE_MIN_WIDTH + BETWEEN_PX);
-        if (x > high || x + HW_TABLE_MIN_WIDTH < low || top > hw_table_get_height(table) || bottom < 0)
+        double x = block * (table->width + BETWEEN_PX);
+        if (x > high || x + table->width < low || top > hw_table_get_height(table) || bottom < 0)
             continue;
         guint first = block * table->rows_per_block;
         cairo_save(cr);

@@ -35,23 +35,24 @@ draw_lines(cairo_t *cr, const Box *box, const HwInk *ink)
     cairo_restore(cr);
 }
 
-/* The text in the middle of the box on a plain ground; turned upright where the box is narrow. */
-static void
-draw_reason(cairo_t *cr, PangoContext *context, const Box *box, const char *text, const HwInk *ink)
+/* Draws the text in the middle of the box on a plain ground, upright or turned, if all of it has room. */
+static bool
+draw_text(cairo_t *cr, PangoContext *context, const Box *box, const char *text, bool turned, const HwInk *ink)
 {
     HwType type = { ink->font_family, ink->font_px, false, false };
-    bool turned = box->width < 9 * ink->font_px;
-    double along = turned ? box->height : box->width, across = turned ? box->width : box->height;
-    double line_px = ink->font_px * 1.25;
-    int max_lines = (int)((across - 4) / line_px);
-    if (max_lines < 1 || along < 4 * ink->font_px)
-        return;
-    double room = MIN(along - 4 * PAD_PX, 34 * ink->font_px);
-    g_autoptr(PangoLayout) layout = hw_text_layout_wrapped(context, &type, text, room, MIN(max_lines, 6));
+    double along = (turned ? box->height : box->width) - 2 * PAD_PX;
+    double across = (turned ? box->width : box->height) - 2;
+    if (along <= 0 || across <= 0)
+        return false;
+    double room = MIN(along, 34 * ink->font_px);
+    g_autoptr(PangoLayout) layout = hw_text_layout_wrapped(context, &type, text, room, 6);
+    pango_layout_set_wrap(layout, PANGO_WRAP_WORD);
     pango_layout_set_alignment(layout, PANGO_ALIGN_CENTER);
-    PangoRectangle ink_box;
-    pango_layout_get_extents(layout, NULL, &ink_box);
-    double width = (double)ink_box.width / PANGO_SCALE, height = (double)ink_box.height / PANGO_SCALE;
+    PangoRectangle extents;
+    pango_layout_get_extents(layout, NULL, &extents);
+    double width = (double)extents.width / PANGO_SCALE, height = (double)extents.height / PANGO_SCALE;
+    if (pango_layout_is_ellipsized(layout) || width > room || height > across)
+        return false;
     cairo_save(cr);
     cairo_translate(cr, box->left + box->width / 2, box->top + box->height / 2);
     if (turned)
@@ -63,6 +64,20 @@ draw_reason(cairo_t *cr, PangoContext *context, const Box *box, const char *text
     hw_colour_set(cr, &ink->void_text);
     hw_text_draw(cr, layout, -room / 2, -height / 2);
     cairo_restore(cr);
+    return true;
+}
+
+/* The whole reason if it has room, else the words alone; upright before turned. */
+static void
+draw_reason(cairo_t *cr, PangoContext *context, const Box *box, const char *words, const char *reason,
+            const HwInk *ink)
+{
+    g_autofree char *whole = g_strdup_printf("%s: %s", words, reason);
+    const char *const texts[] = { whole, words };
+    for (int i = 0; i < 2; i++)
+        for (int turned = 0; turned < 2; turned++)
+            if (draw_text(cr, context, box, texts[i], turned == 1, ink))
+                return;
 }
 
 void
@@ -91,7 +106,6 @@ hw_void_hatch_draw(cairo_t *cr, PangoContext *context, const HwAxis *axis, const
         Box box = { left, top, right - left, bottom - top };
         draw_lines(cr, &box, ink);
         const HwVoid *hole = hw_time_base_get_void(base, (guint)span->void_index);
-        g_autofree char *text = g_strdup_printf("%s: %s", words != NULL ? words : "no picture", hole->reason);
-        draw_reason(cr, context, &box, text, ink);
+        draw_reason(cr, context, &box, words != NULL ? words : "no picture", hole->reason, ink);
     }
 }
