@@ -250,11 +250,7 @@ static Grouping
 find_groups(const Category *category, bool with_taken_out)
 {
     const HwRules *rules = category->input->rules;
-    HwGroupRule rule = { rules->group_gap_ns,
-                         category->input->race != NULL && category->input->race->breakaway->len > 0
-                             ? rules->breakaway_gap_ns
-                             : 0,
-                         HW_BICYCLE_LENGTH_M };
+    HwGroupRule rule = { rules->group_gap_ns, rules->breakaway_gap_ns, HW_BICYCLE_LENGTH_M };
     Grouping grouping = { .rows = g_ptr_array_new() };
     for (guint i = 0; i < category->rows->len; i++) {
         if (joins_groups(row_at(category->rows, i), with_taken_out))
