@@ -5,6 +5,7 @@
 #include "ui/words.h"
 
 #include <glib/gi18n.h>
+#include <string.h>
 
 struct _HwContextLine {
     GtkBox parent_instance;
@@ -58,8 +59,13 @@ show_rules(HwContextLine *line)
     } else if (rules->has_groups) {
         g_autofree char *gap =
             hw_duration_dup_gap(rules->group_gap_ns, hw_duration_decimals(rules->group_gap_ns));
+        g_autofree char *seconds = g_strdup_printf("%s s", gap + 1);
 
-        text = g_strdup_printf(_("%s, group gap %s s"), rules->title, gap + 1);
+        /* The gap is always in sight; most titles name it. */
+        if (strstr(rules->title, seconds))
+            text = g_strdup(rules->title);
+        else
+            text = g_strdup_printf(_("%s, group gap %s"), rules->title, seconds);
         tip = hw_rules_dup_text(rules);
     } else {
         text = g_strdup(rules->title);

@@ -109,16 +109,29 @@ dup_number(const HwFinishRow *row)
 }
 
 static void
+add_part(GString *text, const char *part)
+{
+    if (*part)
+        g_string_append_printf(text, ", %s", part);
+}
+
+static void
 show_spoken(HwFinishRowWidget *widget, const char *place, const char *number, const char *name,
             const char *team, const char *time, const char *gap, bool rough)
 {
-    g_autofree char *spoken = g_strdup_printf(_("%s, number %s, %s, %s, %s, %s%s"), place, number, name, team,
-                                              time, gap, rough ? _(", to re-read") : "");
+    g_autofree char *bib = g_strdup_printf(_("number %s"), number);
+    g_autoptr(GString) text = g_string_new(place);
 
-    if (g_strcmp0(spoken, widget->spoken) == 0)
+    add_part(text, bib);
+    add_part(text, name);
+    add_part(text, team);
+    add_part(text, time);
+    add_part(text, gap);
+    add_part(text, rough ? _("to re-read") : "");
+    if (g_strcmp0(text->str, widget->spoken) == 0)
         return;
     g_free(widget->spoken);
-    widget->spoken = g_steal_pointer(&spoken);
+    widget->spoken = g_strdup(text->str);
     gtk_accessible_update_property(GTK_ACCESSIBLE(widget), GTK_ACCESSIBLE_PROPERTY_LABEL, widget->spoken, -1);
 }
 
@@ -134,6 +147,11 @@ hw_finish_row_widget_show(HwFinishRowWidget *widget, const HwFinishList *list, c
     g_autofree char *gap = hw_finish_row_dup_gap(list, row);
     bool rough = marker && marker->state == HW_MARKER_ROUGH;
 
+    /* Where the time says all, the gap would only repeat it. */
+    if (strcmp(gap, time) == 0 || (row->has_official_gap && row->official_gap_ns == 0 && !row->same_time)) {
+        g_free(gap);
+        gap = g_strdup("");
+    }
     if (strcmp(widget->bib, row->bib) != 0) {
         g_free(widget->bib);
         widget->bib = g_strdup(row->bib);
@@ -155,6 +173,7 @@ hw_finish_row_widget_show(HwFinishRowWidget *widget, const HwFinishList *list, c
         gtk_widget_remove_css_class(GTK_WIDGET(widget->name), "dim-label");
     gtk_widget_set_visible(GTK_WIDGET(widget->state), rough);
     gtk_widget_set_visible(GTK_WIDGET(widget->team), *team != '\0');
+    gtk_widget_set_visible(GTK_WIDGET(widget->time), *time != '\0');
     gtk_widget_set_visible(GTK_WIDGET(widget->gap), *gap != '\0');
     gtk_widget_set_tooltip_text(GTK_WIDGET(widget->name), *row->name ? row->name : NULL);
     show_spoken(widget, place, number, name, team, time, gap, rough);

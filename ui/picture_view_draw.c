@@ -56,7 +56,7 @@ state_of(const HwMarker *marker)
 void
 hw_picture_view_lay_out(HwPictureView *view)
 {
-    HwPennantPlace place = { 0.0, HW_PICTURE_Y, 0.0, HW_RAIL_PX };
+    HwPennantPlace place = { 0.0, HW_PICTURE_Y, 2.0, HW_RAIL_PX - 2.0 };
     guint n_markers;
     g_autofree HwPennant *pennants = NULL;
     HwViewMap map;
@@ -112,8 +112,8 @@ draw_head(HwPictureView *view, GtkSnapshot *snapshot, const HwViewMap *map, int 
     /* A pointer at the foot of the ruler: where the line stands, even over a bare picture. */
     line_x = hw_view_map_x(map, hw_session_get_reading_cell(view->session));
     if (line_x >= 0.0 && line_x <= width) {
-        cairo_move_to(cr, line_x - 5.0, HW_PICTURE_Y - 7.0);
-        cairo_line_to(cr, line_x + 5.0, HW_PICTURE_Y - 7.0);
+        cairo_move_to(cr, line_x - 5.0, HW_PICTURE_Y - 5.0);
+        cairo_line_to(cr, line_x + 5.0, HW_PICTURE_Y - 5.0);
         cairo_line_to(cr, line_x, HW_PICTURE_Y);
         cairo_close_path(cr);
         hw_colour_set(cr, &view->ink.text);

@@ -94,6 +94,7 @@ show_marker(HwTray *tray)
     const HwRider *rider = NULL;
     g_autofree char *name = NULL;
     g_autofree char *who = NULL;
+    bool ambiguous;
     int n_within = 0;
 
     if (document)
@@ -101,11 +102,12 @@ show_marker(HwTray *tray)
                                        hw_naming_find_marker(tray->session, reach_px(tray), &n_within));
     if (marker && document->start_list)
         rider = hw_start_list_find(document->start_list, marker->bib,
-                                   marker->category[0] ? marker->category : NULL, NULL);
+                                   marker->category[0] ? marker->category : NULL, &ambiguous);
     if (marker) {
+        g_autofree char *known = rider ? hw_words_dup_rider(rider) : g_strdup("");
+
         name = hw_words_dup_marker(marker);
-        who = rider ? hw_words_dup_rider(rider) : g_strdup("");
-        who = g_strconcat(name, *who ? "  " : "", g_steal_pointer(&who), NULL);
+        who = g_strdup_printf("%s%s%s", name, *known ? "  " : "", known);
     }
     set_text(tray->rider, who ? who : "");
     set_sentence_class(tray, NULL);
@@ -257,6 +259,7 @@ hw_tray_set_session(HwTray *tray, HwSession *session)
     tray->session = g_object_ref(session);
     for (guint i = 0; i < G_N_ELEMENTS(names); i++)
         g_signal_connect_object(session, names[i], G_CALLBACK(session_cb), tray, G_CONNECT_SWAPPED);
+    g_signal_connect_object(session, "view-changed", G_CALLBACK(update), tray, G_CONNECT_SWAPPED);
     update(tray);
 }
 

@@ -27,10 +27,24 @@ hw_window_toast(HwWindow *window, const char *text, bool undo)
 
     adw_toast_set_timeout(toast, undo ? 8 : 4);
     if (undo) {
-        adw_toast_set_button_label(toast, _("_Undo"));
+        adw_toast_set_button_label(toast, _("Undo"));
         adw_toast_set_action_name(toast, "win.undo");
     }
     adw_toast_overlay_add_toast(window->toasts, toast);
+}
+
+void
+hw_window_show_page(HwWindow *window, const char *name)
+{
+    GtkWidget *page = gtk_stack_get_child_by_name(window->stack, name);
+
+    /* A page of a stack that is not shown is still there for assistive technology: it must be hidden. */
+    gtk_widget_set_visible(page, TRUE);
+    gtk_stack_set_visible_child(window->stack, page);
+    for (GtkWidget *child = gtk_widget_get_first_child(GTK_WIDGET(window->stack)); child;
+         child = gtk_widget_get_next_sibling(child))
+        if (child != page)
+            gtk_widget_set_visible(child, FALSE);
 }
 
 static void
@@ -203,6 +217,7 @@ hw_window_init(HwWindow *window)
                             G_CONNECT_SWAPPED);
     g_signal_connect_object(window->session, "notify::selection", G_CALLBACK(hw_window_update_actions),
                             window, G_CONNECT_SWAPPED);
+    hw_window_show_page(window, "start");
     hw_window_add_actions(window);
     hw_window_setup_drop(window);
     hw_window_update_actions(window);

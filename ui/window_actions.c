@@ -51,8 +51,7 @@ static void
 back_act(HwWindow *window, const char *text)
 {
     (void)text;
-    gtk_stack_set_visible_child_name(window->stack,
-                                     hw_session_get_document(window->session) ? "judge" : "start");
+    hw_window_show_page(window, hw_session_get_document(window->session) ? "judge" : "start");
 }
 
 static void

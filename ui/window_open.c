@@ -26,15 +26,14 @@ show_wait_cb(gpointer data)
     HwWindow *window = data;
 
     window->opening_delay = 0;
-    gtk_stack_set_visible_child_name(window->stack, "busy");
+    hw_window_show_page(window, "busy");
     return G_SOURCE_REMOVE;
 }
 
 static void
 show_page(HwWindow *window)
 {
-    gtk_stack_set_visible_child_name(window->stack,
-                                     hw_session_get_document(window->session) ? "judge" : "start");
+    hw_window_show_page(window, hw_session_get_document(window->session) ? "judge" : "start");
     hw_window_update_actions(window);
 }
 
@@ -56,7 +55,7 @@ show_failure(HwWindow *window, const char *sentence)
         return;
     }
     adw_status_page_set_description(window->failed, escaped);
-    gtk_stack_set_visible_child_name(window->stack, "failed");
+    hw_window_show_page(window, "failed");
     hw_window_update_actions(window);
 }
 
@@ -145,8 +144,8 @@ hw_window_open(HwWindow *window, HwOpenRequest *request)
     dialog =
         adw_message_dialog_new(GTK_WINDOW(window), _("Markers are not saved"),
                                _("Opening another recording drops what was marked since the last save."));
-    adw_message_dialog_add_responses(ADW_MESSAGE_DIALOG(dialog), "cancel", _("_Cancel"), "discard",
-                                     _("_Drop and open"), NULL);
+    adw_message_dialog_add_responses(ADW_MESSAGE_DIALOG(dialog), "cancel", _("Cancel"), "discard",
+                                     _("Drop and open"), NULL);
     adw_message_dialog_set_response_appearance(ADW_MESSAGE_DIALOG(dialog), "discard",
                                                ADW_RESPONSE_DESTRUCTIVE);
     adw_message_dialog_set_default_response(ADW_MESSAGE_DIALOG(dialog), "cancel");
@@ -189,7 +188,7 @@ hw_window_choose_recording(HwWindow *window)
 {
     GtkFileChooserNative *chooser =
         gtk_file_chooser_native_new(_("Open a recording: choose its folder"), GTK_WINDOW(window),
-                                    GTK_FILE_CHOOSER_ACTION_SELECT_FOLDER, _("_Open"), _("_Cancel"));
+                                    GTK_FILE_CHOOSER_ACTION_SELECT_FOLDER, _("Open"), _("Cancel"));
 
     gtk_native_dialog_set_modal(GTK_NATIVE_DIALOG(chooser), TRUE);
     g_signal_connect_swapped(chooser, "response", G_CALLBACK(chosen_cb), window);

@@ -43,6 +43,9 @@ void hw_window_hide_message(HwWindow *window);
 /* A passing remark; `undo`: with a button that undoes. */
 void hw_window_toast(HwWindow *window, const char *text, bool undo);
 
+/* "start", "busy", "failed" or "judge"; the others are hidden from everybody. */
+void hw_window_show_page(HwWindow *window, const char *name);
+
 void hw_window_add_actions(HwWindow *window);
 /* Which acts make sense now. */
 void hw_window_update_actions(HwWindow *window);

@@ -71,8 +71,8 @@ ask_overwrite(HwWindow *window, const char *path)
         name);
     GtkWidget *dialog = adw_message_dialog_new(GTK_WINDOW(window), _("Replace other markers?"), body);
 
-    adw_message_dialog_add_responses(ADW_MESSAGE_DIALOG(dialog), "cancel", _("_Cancel"), "overwrite",
-                                     _("_Replace"), NULL);
+    adw_message_dialog_add_responses(ADW_MESSAGE_DIALOG(dialog), "cancel", _("Cancel"), "overwrite",
+                                     _("Replace"), NULL);
     adw_message_dialog_set_response_appearance(ADW_MESSAGE_DIALOG(dialog), "overwrite",
                                                ADW_RESPONSE_DESTRUCTIVE);
     adw_message_dialog_set_default_response(ADW_MESSAGE_DIALOG(dialog), "cancel");
@@ -163,8 +163,8 @@ hw_window_close_request(GtkWindow *gtk_window)
     body = g_strdup_printf(_("What was marked since the last save of %s is lost if it is not saved."),
                            document->markers_path);
     dialog = adw_message_dialog_new(gtk_window, _("Save the markers?"), body);
-    adw_message_dialog_add_responses(ADW_MESSAGE_DIALOG(dialog), "cancel", _("_Cancel"), "discard",
-                                     _("_Discard"), "save", _("_Save"), NULL);
+    adw_message_dialog_add_responses(ADW_MESSAGE_DIALOG(dialog), "cancel", _("Cancel"), "discard",
+                                     _("Discard"), "save", _("Save"), NULL);
     adw_message_dialog_set_response_appearance(ADW_MESSAGE_DIALOG(dialog), "discard",
                                                ADW_RESPONSE_DESTRUCTIVE);
     adw_message_dialog_set_response_appearance(ADW_MESSAGE_DIALOG(dialog), "save", ADW_RESPONSE_SUGGESTED);
@@ -355,7 +355,7 @@ choose_export(HwWindow *window, const char *title, const char *suffix, void (*ac
         return;
     choice = g_new0(Choice, 1);
     chooser = gtk_file_chooser_native_new(title, GTK_WINDOW(window), GTK_FILE_CHOOSER_ACTION_SAVE,
-                                          _("_Export"), _("_Cancel"));
+                                          _("Export"), _("Cancel"));
     name = g_path_get_basename(hw_recording_get_path(document->recording));
     proposal = g_strconcat(name, suffix, NULL);
     choice->window = window;
