@@ -14,8 +14,9 @@ typedef struct {
 /* Of n >= 2 values. */
 Spread spread_of(const double *values, int n);
 
-/* The monotonic clock, in ns. */
+/* Processor time of this process, in ns: what another program takes of the machine does not count. */
 int64_t spread_now_ns(void);
 
-/* "0.953 ± 0.004 (n = 15)" after the words, and whether it keeps `limit` (from below where `at_least`). */
+/* "0.953 ± 0.004 (n = 15)" after the words, and whether it keeps `limit` (from below where `at_least`);
+ * no word of an aim where it is 0. */
 void spread_print(const char *words, Spread spread, bool at_least, double limit);
