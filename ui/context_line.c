@@ -136,6 +136,7 @@ hw_context_line_dispose(GObject *object)
     if (line->session)
         g_signal_handlers_disconnect_by_data(line->session, line);
     g_clear_object(&line->session);
+    gtk_widget_dispose_template(GTK_WIDGET(object), HW_TYPE_CONTEXT_LINE);
     G_OBJECT_CLASS(hw_context_line_parent_class)->dispose(object);
 }
 

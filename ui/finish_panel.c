@@ -66,6 +66,18 @@ match_rows(HwFinishPanel *panel, const HwFinishList *list)
     }
 }
 
+/* Brings a row into sight, and no farther. */
+static void
+scroll_to(HwFinishPanel *panel, GtkWidget *row)
+{
+    GtkAdjustment *adjustment = gtk_list_box_get_adjustment(panel->list);
+    graphene_rect_t bounds;
+
+    if (adjustment && gtk_widget_compute_bounds(row, GTK_WIDGET(panel->list), &bounds))
+        gtk_adjustment_clamp_page(adjustment, (double)bounds.origin.y,
+                                  (double)(bounds.origin.y + bounds.size.height));
+}
+
 static void
 show_selection(HwFinishPanel *panel)
 {
@@ -78,6 +90,7 @@ show_selection(HwFinishPanel *panel)
         gtk_list_box_unselect_all(panel->list);
     } else {
         gtk_list_box_select_row(panel->list, GTK_LIST_BOX_ROW(row_at(panel, (guint)row)));
+        scroll_to(panel, GTK_WIDGET(row_at(panel, (guint)row)));
         pair = hw_pair_words_dup(hw_pair_words_find_ahead(list, (guint)row),
                                  g_ptr_array_index(list->rows, (guint)row));
     }
@@ -147,10 +160,13 @@ list_changed_cb(HwFinishPanel *panel)
 static void
 row_selected_cb(HwFinishPanel *panel, GtkListBoxRow *row)
 {
-    const HwFinishList *list = hw_session_get_list(panel->session, NULL);
+    const HwFinishList *list;
     int index, marker;
 
-    if (panel->is_showing || !row || !list)
+    if (panel->is_showing || !row || !panel->session)
+        return;
+    list = hw_session_get_list(panel->session, NULL);
+    if (!list)
         return;
     index = gtk_list_box_row_get_index(row);
     marker = hw_session_find_marker(panel->session, g_ptr_array_index(list->rows, (guint)index));
@@ -180,6 +196,7 @@ hw_finish_panel_dispose(GObject *object)
     if (panel->session)
         g_signal_handlers_disconnect_by_data(panel->session, panel);
     g_clear_object(&panel->session);
+    gtk_widget_dispose_template(GTK_WIDGET(object), HW_TYPE_FINISH_PANEL);
     G_OBJECT_CLASS(hw_finish_panel_parent_class)->dispose(object);
 }
 

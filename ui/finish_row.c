@@ -30,6 +30,13 @@ set_text(GtkLabel *label, const char *text)
 }
 
 static void
+hw_finish_row_widget_dispose(GObject *object)
+{
+    gtk_widget_dispose_template(GTK_WIDGET(object), HW_TYPE_FINISH_ROW_WIDGET);
+    G_OBJECT_CLASS(hw_finish_row_widget_parent_class)->dispose(object);
+}
+
+static void
 hw_finish_row_widget_finalize(GObject *object)
 {
     HwFinishRowWidget *widget = HW_FINISH_ROW_WIDGET(object);
@@ -45,6 +52,7 @@ hw_finish_row_widget_class_init(HwFinishRowWidgetClass *class)
 {
     GtkWidgetClass *widget_class = GTK_WIDGET_CLASS(class);
 
+    G_OBJECT_CLASS(class)->dispose = hw_finish_row_widget_dispose;
     G_OBJECT_CLASS(class)->finalize = hw_finish_row_widget_finalize;
     gtk_widget_class_set_template_from_resource(widget_class, "/org/halfwheel/Halfwheel/finish_row.ui");
     gtk_widget_class_bind_template_child(widget_class, HwFinishRowWidget, place);

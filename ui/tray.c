@@ -222,6 +222,7 @@ hw_tray_dispose(GObject *object)
     g_clear_object(&tray->session);
     g_clear_pointer(&tray->asked, hw_naming_free);
     g_clear_pointer(&tray->said, g_free);
+    gtk_widget_dispose_template(GTK_WIDGET(object), HW_TYPE_TRAY);
     G_OBJECT_CLASS(hw_tray_parent_class)->dispose(object);
 }
 

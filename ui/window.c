@@ -160,6 +160,7 @@ hw_window_dispose(GObject *object)
     g_clear_handle_id(&window->opening_delay, g_source_remove);
     g_clear_object(&window->session);
     g_clear_pointer(&window->samples, g_free);
+    gtk_widget_dispose_template(GTK_WIDGET(object), HW_TYPE_WINDOW);
     G_OBJECT_CLASS(hw_window_parent_class)->dispose(object);
 }
 

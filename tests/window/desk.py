@@ -130,8 +130,8 @@ class Desk:
             heap.extend(reversed(children))
             yield item
 
-    def find(self, role, name=None):
-        for item in self.everything():
+    def find(self, role, name=None, root=None):
+        for item in self.everything(root):
             try:
                 if item.get_role() == role and (name is None or item.get_name() == name):
                     return item
@@ -171,8 +171,16 @@ class Desk:
         return any(part in text for text in self.texts())
 
     def press_button(self, name):
-        button = wait_for("the button " + name, lambda: self.find(Atspi.Role.PUSH_BUTTON, name))
-        button.do_action(0)
+        """In the newest window: the dialog, where there is one."""
+
+        def newest():
+            application = self.find_application()
+            window = application.get_child_at_index(application.get_child_count() - 1)
+            # The toolkit says the names of its dialogs' buttons twice.
+            return (self.find(Atspi.Role.PUSH_BUTTON, name, window) or
+                    self.find(Atspi.Role.PUSH_BUTTON, name + " " + name, window))
+
+        wait_for("the button " + name, newest).do_action(0)
 
     # hands
 
