@@ -102,12 +102,18 @@ say_what_input_lacks(HwFinishList *list, const HwFinishInput *input)
 static void
 say_about_starts(HwFinishList *list)
 {
-    guint without = 0, crossed = 0;
+    guint without = 0, crossed = 0, own = 0;
     for (guint i = 0; i < list->rows->len; i++) {
         const HwFinishRow *row = g_ptr_array_index(list->rows, i);
         crossed += row->crossed;
         without += row->crossed && row->start_source == HW_START_NONE;
+        own +=
+            row->crossed && (row->start_source == HW_START_SCHEDULED || row->start_source == HW_START_GATE);
     }
+    if (own > 0 && list->unrounded)
+        hw_finish_list_say(
+            list, "Riders have starts of their own: the order across the line is no ranking by time; name a "
+                  "rule set that ranks by it, such as itt-100th.");
     if (without == 0)
         return;
     if (without == crossed)

@@ -1,6 +1,7 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 /* The list for a terminal: a table, the account of the riders, what has to be known about it. */
 #include "core/base/duration.h"
+#include "core/base/limits.h"
 #include "core/ruling/finish_list.h"
 
 #include <math.h>
@@ -35,11 +36,11 @@ dup_measured_gap(const HwGap *gap)
     return g_strdup_printf("%.3f ± %.3f ms", gap_ms, 2.0 * gap->u_gap_ns * 1e-6);
 }
 
-/* "6.5 ± 1.2 cm", likewise; "" without a speed. */
+/* "6.5 ± 1.2 cm", likewise; "" without a speed, and over a second, where speed times gap says little. */
 static char *
 dup_distance(const HwGap *gap)
 {
-    if (isnan(gap->distance_m))
+    if (isnan(gap->distance_m) || ABS(gap->gap_ns) > HW_NS_PER_S)
         return g_strdup("");
     if (isnan(gap->u_distance_m))
         return g_strdup_printf("%.1f cm, ± unknown", gap->distance_m * 100);

@@ -228,8 +228,11 @@ static void
 find_identity(SimRecorder *r)
 {
     const SimBlock *b = &g_array_index(r->blocks, SimBlock, 0);
-    g_autofree char *text = g_strdup_printf("%s\n%s\n%s\n%" G_GINT64_FORMAT "\n", r->scenario->epoch,
-                                            r->scenario->camera, b->file, (gint64)b->first_ns);
+    /* A block with listed stamps has no first_ns: nothing stands in its place. */
+    g_autofree char *stamp =
+        b->times_file != NULL ? g_strdup("") : g_strdup_printf("%" G_GINT64_FORMAT, (gint64)b->first_ns);
+    g_autofree char *text =
+        g_strdup_printf("%s\n%s\n%s\n%s\n", r->scenario->epoch, r->scenario->camera, b->file, stamp);
     g_autofree char *hex = digest_hex(text, strlen(text));
     g_strlcpy(r->identity, hex, sizeof r->identity);
 }

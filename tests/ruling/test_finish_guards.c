@@ -283,6 +283,9 @@ the_list_says_whose_gate_time_does_not_count(void)
     g_assert_cmpint(fixture_row(list, "2", NULL)->official_ns, ==, INT64_C(62000000000));
     g_assert_true(fixture_says(list, "Bib 2", "scheduled one counts", NULL));
     g_assert_false(fixture_says(list, "Bib 1", "gate", NULL));
+    given.rules = NULL;
+    g_autoptr(HwFinishList) unruled = fixture_list(fixture, &given);
+    g_assert_true(fixture_says(unruled, "no ranking by time", NULL));
 }
 
 static void
