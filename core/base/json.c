@@ -66,10 +66,13 @@ hw_json_read_file(const char *path, size_t max_bytes, GError **error)
     return text != NULL ? hw_json_parse(text, size, path, error) : NULL;
 }
 
-/* The value of a key, with null taken for absent. False (error set) where it is needed and not there. */
+#define KIND(type) (1u << (type))
+
+/* The value of a key, with null taken for absent (*value NULL), of one of the kinds. False with an error
+ * where it is needed and not there, or of another kind; `wanted` says which would do. */
 static bool
-find(const json_t *object, const char *key, HwJsonNeed need, const char *where, json_t **value,
-     GError **error)
+find(const json_t *object, const char *key, HwJsonNeed need, const char *where, unsigned kinds,
+     const char *wanted, json_t **value, GError **error)
 {
     json_t *found = json_object_get(object, key);
     *value = found != NULL && !json_is_null(found) ? found : NULL;
@@ -77,14 +80,11 @@ find(const json_t *object, const char *key, HwJsonNeed need, const char *where, 
         g_set_error(error, HW_BASE_ERROR, HW_BASE_ERROR_SYNTAX, "%s: “%s” is missing; add it.", where, key);
         return false;
     }
+    if (*value != NULL && (KIND(json_typeof(*value)) & kinds) == 0) {
+        g_set_error(error, HW_BASE_ERROR, HW_BASE_ERROR_SYNTAX, "%s: “%s” must be %s.", where, key, wanted);
+        return false;
+    }
     return true;
-}
-
-static bool
-wrong_type(const char *where, const char *key, const char *wanted, GError **error)
-{
-    g_set_error(error, HW_BASE_ERROR, HW_BASE_ERROR_SYNTAX, "%s: “%s” must be %s.", where, key, wanted);
-    return false;
 }
 
 bool
@@ -92,13 +92,10 @@ hw_json_get_string(const json_t *object, const char *key, HwJsonNeed need, const
                    const char **value, GError **error)
 {
     json_t *found;
-    if (!find(object, key, need, where, &found, error))
+    if (!find(object, key, need, where, KIND(JSON_STRING), "a text", &found, error))
         return false;
-    if (found == NULL)
-        return true;
-    if (!json_is_string(found))
-        return wrong_type(where, key, "a text", error);
-    *value = json_string_value(found);
+    if (found != NULL)
+        *value = json_string_value(found);
     return true;
 }
 
@@ -107,12 +104,10 @@ hw_json_get_int64(const json_t *object, const char *key, HwJsonNeed need, int64_
                   const char *where, int64_t *value, GError **error)
 {
     json_t *found;
-    if (!find(object, key, need, where, &found, error))
+    if (!find(object, key, need, where, KIND(JSON_INTEGER), "a whole number", &found, error))
         return false;
     if (found == NULL)
         return true;
-    if (!json_is_integer(found))
-        return wrong_type(where, key, "a whole number", error);
     int64_t number = json_integer_value(found);
     if (number < min || number > max) {
         g_set_error(error, HW_BASE_ERROR, HW_BASE_ERROR_RANGE,
@@ -130,12 +125,10 @@ hw_json_get_double(const json_t *object, const char *key, HwJsonNeed need, doubl
                    const char *where, double *value, GError **error)
 {
     json_t *found;
-    if (!find(object, key, need, where, &found, error))
+    if (!find(object, key, need, where, KIND(JSON_INTEGER) | KIND(JSON_REAL), "a number", &found, error))
         return false;
     if (found == NULL)
         return true;
-    if (!json_is_number(found))
-        return wrong_type(where, key, "a number", error);
     double number = json_number_value(found);
     if (!isfinite(number) || number < min || number > max) {
         g_set_error(error, HW_BASE_ERROR, HW_BASE_ERROR_RANGE, "%s: “%s” is %g; it must lie from %g to %g.",
@@ -149,14 +142,12 @@ hw_json_get_double(const json_t *object, const char *key, HwJsonNeed need, doubl
 bool
 hw_json_get_bool(const json_t *object, const char *key, const char *where, bool *value, GError **error)
 {
-    json_t *found = NULL;
-    if (!find(object, key, HW_JSON_OPTIONAL, where, &found, error))
+    json_t *found;
+    if (!find(object, key, HW_JSON_OPTIONAL, where, KIND(JSON_TRUE) | KIND(JSON_FALSE), "true or false",
+              &found, error))
         return false;
-    if (found == NULL)
-        return true;
-    if (!json_is_boolean(found))
-        return wrong_type(where, key, "true or false", error);
-    *value = json_is_true(found);
+    if (found != NULL)
+        *value = json_is_true(found);
     return true;
 }
 
@@ -165,13 +156,10 @@ hw_json_get_array(const json_t *object, const char *key, HwJsonNeed need, const 
                   GError **error)
 {
     json_t *found;
-    if (!find(object, key, need, where, &found, error))
+    if (!find(object, key, need, where, KIND(JSON_ARRAY), "a list", &found, error))
         return false;
-    if (found == NULL)
-        return true;
-    if (!json_is_array(found))
-        return wrong_type(where, key, "a list", error);
-    *value = found;
+    if (found != NULL)
+        *value = found;
     return true;
 }
 
@@ -180,13 +168,10 @@ hw_json_get_object(const json_t *object, const char *key, HwJsonNeed need, const
                    GError **error)
 {
     json_t *found;
-    if (!find(object, key, need, where, &found, error))
+    if (!find(object, key, need, where, KIND(JSON_OBJECT), "an object", &found, error))
         return false;
-    if (found == NULL)
-        return true;
-    if (!json_is_object(found))
-        return wrong_type(where, key, "an object", error);
-    *value = found;
+    if (found != NULL)
+        *value = found;
     return true;
 }
 

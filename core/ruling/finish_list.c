@@ -71,9 +71,7 @@ say_what_recording_lacks(HwFinishList *list, const HwFinishInput *input)
         hw_finish_list_say(list, "The recording is still being written; riders may follow.");
     if (input->n_unchecked_blocks > 0)
         hw_finish_list_say(
-            list,
-            "%u of %u blocks carry no marker and were not checked for damage; inspect checks them "
-            "all.",
+            list, "Blocks without a marker were not checked for damage (%u of %u); inspect checks them all.",
             input->n_unchecked_blocks, hw_strip_get_n_blocks(input->strip));
 }
 
