@@ -168,10 +168,12 @@ add_stretch(Builder *b, const HwSegment *segment, int64_t last_ns, const char *f
         b->n_close++;
     if (!joins) {
         int64_t start_ns = meet(b, segment->first_ns, file);
-        /* Only damage between two readable columns less than a period from where it should be gets here. */
-        int64_t floor_ns = b->base->voids->len > b->first_loose ? last_void(b)->start_ns : start_ns;
+        int64_t floor_ns = base->voids->len > b->first_loose ? last_void(b)->start_ns : start_ns;
+        /* Damage whose neighbours stand too close to leave it time: it gets none, and nothing overlaps. */
         if (b->known && start_ns < floor_ns) {
-            start_ns = MIN(floor_ns, b->readable_ns + (segment->first_ns - b->readable_ns) / 2);
+            bool after_run = base->runs->len > 0 && last_run(b)->clock == b->clock;
+            int64_t limit_ns = after_run ? b->readable_ns + distance_ns / 2 : segment->first_ns;
+            start_ns = MIN(floor_ns, limit_ns);
             clip_back(b, start_ns);
         }
         HwRun run = { segment->first_col, 0, MIN(start_ns, segment->first_ns), 0, b->clock };

@@ -428,6 +428,33 @@ damage_at_the_ends_keeps_its_columns(void)
     g_assert_cmpint(hw_time_base_get_duration_ns(base), ==, 10 * P);
 }
 
+/* Centres at 9 P, (9.3 P damaged) and 9.6 P: what stands between them is shared out, and nothing overlaps. */
+static void
+damage_between_scans_too_close_takes_no_time(void)
+{
+    HwScan scan = scan_of(2000, HW_STAMP_MIDDLE, 0);
+    HwTimedBlock unplaced = { .stamps = HW_STAMPS_TIMES, .n_columns = 1, .file = "b", .damage = "b is cut" };
+    HwTimedBlock middles[] = { damaged(by_rate("b", 1, 9 * P + 3 * P / 10), "b is cut"), unplaced };
+    for (guint i = 0; i < G_N_ELEMENTS(middles); i++) {
+        HwTimedBlock blocks[] = { by_rate("a", 10, 0), middles[i], by_rate("c", 10, 9 * P + 6 * P / 10) };
+        g_autoptr(HwTimeBase) base = base_of(&scan, blocks, 3);
+        int64_t boundary_ns = 9 * P + 3 * P / 10;
+        assert_void(base, 0, HW_VOID_DAMAGED, 10, 1, boundary_ns, 0);
+        g_assert_cmpint(hw_time_base_get_run(base, 0)->end_ns, ==, boundary_ns);
+        g_assert_cmpint(hw_time_base_get_run(base, 1)->start_ns, ==, boundary_ns);
+        g_assert_cmpint(instant(base, 9.75), ==, 9 * P + 3 * P / 20);
+        g_assert_cmpint(instant(base, 11.5), ==, 9 * P + 6 * P / 10);
+    }
+    /* With nothing readable before: placed damage, then one that only follows it. */
+    HwTimedBlock blocks[] = { damaged(by_rate("a", 2, 0), "a is cut"), unplaced,
+                              by_rate("c", 10, P + P / 4) };
+    g_autoptr(HwTimeBase) base = base_of(&scan, blocks, 3);
+    assert_void(base, 0, HW_VOID_DAMAGED, 0, 2, -P / 2, P + P / 2 + P / 4);
+    assert_void(base, 1, HW_VOID_DAMAGED, 2, 1, P + P / 4, 0);
+    g_assert_cmpint(hw_time_base_get_run(base, 0)->start_ns, ==, P + P / 4);
+    g_assert_cmpint(instant(base, 3.5), ==, P + P / 4);
+}
+
 static void
 all_blocks_damaged_leaves_an_empty_base(void)
 {
@@ -508,6 +535,7 @@ main(int argc, char **argv)
     CASE(dropped_scans_beside_a_damaged_block_are_a_void_of_their_own);
     CASE(damage_that_nothing_counts_reaches_to_the_next_block);
     CASE(damage_at_the_ends_keeps_its_columns);
+    CASE(damage_between_scans_too_close_takes_no_time);
     CASE(all_blocks_damaged_leaves_an_empty_base);
     CASE(nothing_stands_off_the_strip);
     CASE(impossible_blocks_are_refused);
