@@ -21,6 +21,12 @@ hw_separated_get_word(HwSeparated separated)
     return words[separated];
 }
 
+const char *
+hw_separated_get_told_apart(HwSeparated separated)
+{
+    return separated == HW_SEPARATED_NOT_ESTABLISHED ? "cannot be shown" : hw_separated_get_word(separated);
+}
+
 double
 hw_u_by_eye_ns(double period_ns)
 {

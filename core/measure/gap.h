@@ -34,6 +34,9 @@ typedef enum { HW_SEPARATED_YES, HW_SEPARATED_NO, HW_SEPARATED_NOT_ESTABLISHED }
 /* "yes", "no", "not established": as in files. */
 const char *hw_separated_get_word(HwSeparated separated);
 
+/* "yes", "no", "cannot be shown": what people read behind "told apart". */
+const char *hw_separated_get_told_apart(HwSeparated separated);
+
 typedef struct {
     int64_t gap_ns;       /* behind − ahead; ≥ 0 where the order is right */
     double u_gap_ns;      /* standard, of the readings and the rate */

@@ -73,7 +73,7 @@ dup_cells(const HwFinishList *list, const HwFinishRow *row)
     cells[i++] = hw_finish_row_dup_gap(list, row);
     cells[i++] = row->has_prev ? dup_measured_gap(&row->prev) : g_strdup("");
     cells[i++] = row->has_prev ? dup_distance(&row->prev) : g_strdup("");
-    cells[i++] = g_strdup(row->has_prev ? hw_separated_get_word(row->prev.separated) : "");
+    cells[i++] = g_strdup(row->has_prev ? hw_separated_get_told_apart(row->prev.separated) : "");
     return cells;
 }
 

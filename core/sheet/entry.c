@@ -116,20 +116,6 @@ dup_place(const HwFinishRow *row)
     return g_strdup(hw_status_get_word(row->status));
 }
 
-static const char *
-apart_words(HwSeparated separated)
-{
-    switch (separated) {
-    case HW_SEPARATED_YES:
-        return "yes";
-    case HW_SEPARATED_NO:
-        return "no";
-    case HW_SEPARATED_NOT_ESTABLISHED:
-        break;
-    }
-    return "cannot be shown";
-}
-
 static void
 describe_ranked(HwEntry *entry, const HwPicture *picture, bool with_category)
 {
@@ -164,7 +150,8 @@ describe_ranked(HwEntry *entry, const HwPicture *picture, bool with_category)
     entry->cells[HW_CELL_GAP] = row->rank > 1 ? hw_finish_row_dup_gap(picture->list, row) : g_strdup("");
     entry->cells[HW_CELL_BEFORE] = g_strdup(to_before);
     entry->cells[HW_CELL_WINNER] = g_strdup(to_winner);
-    entry->cells[HW_CELL_APART] = g_strdup(row->has_prev ? apart_words(row->prev.separated) : "");
+    entry->cells[HW_CELL_APART] =
+        g_strdup(row->has_prev ? hw_separated_get_told_apart(row->prev.separated) : "");
 }
 
 static void
@@ -311,7 +298,7 @@ hw_entries_dup_pair(const HwPicture *picture, const HwEntry *a, const HwEntry *b
         g_string_append_printf(text, ", %s", distance);
     }
     g_string_append_printf(text, " (measured, k" NBSP "=" NBSP "2). Told apart by this recording: %s",
-                           apart_words(gap.separated));
+                           hw_separated_get_told_apart(gap.separated));
     if (gap.separated == HW_SEPARATED_NOT_ESTABLISHED)
         g_string_append_printf(text, ", as %s was not measured",
                                setup.rate_known ? "the camera’s alignment"
