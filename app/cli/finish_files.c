@@ -123,8 +123,11 @@ read_calibration(HwFinishFiles *files, const HwFinishOptions *options, GError **
         calibration->u_rate_hz > 0.0 ? CLAMP(1 - (int)floor(log10(calibration->u_rate_hz)), 0, 9) : 9;
     g_autofree char *rate = hw_number_dup_fixed(calibration->rate_hz, decimals);
     g_autofree char *spread = hw_number_dup_fixed(2.0 * calibration->u_rate_hz, decimals);
-    tell(files, "Calibration", "%s%s: scan rate %s ± %s Hz (k = 2), made %s by %s", path, how, rate, spread,
-         calibration->made, calibration->by);
+    g_autofree char *made =
+        *calibration->made != '\0' ? g_strconcat(", made ", calibration->made, NULL) : g_strdup("");
+    g_autofree char *by =
+        *calibration->by != '\0' ? g_strconcat(" by ", calibration->by, NULL) : g_strdup("");
+    tell(files, "Calibration", "%s%s: scan rate %s ± %s Hz (k = 2)%s%s", path, how, rate, spread, made, by);
     return true;
 }
 

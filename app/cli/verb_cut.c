@@ -295,8 +295,8 @@ read_back(HwCut *cut, GError **error)
             g_propagate_error(error, g_steal_pointer(&fault));
         else
             g_set_error(error, fault->domain, fault->code,
-                        "%s cannot be made a recording: read back as a block, %s", cut->image,
-                        fault->message);
+                        "%s cannot be made a recording: read back, %s; fetch it again from the camera.",
+                        cut->image, fault->message);
         return false;
     }
     return true;

@@ -151,7 +151,7 @@ judge_blocks(HwInspection *inspection)
         for (guint k = 0; k < inspection->problems->len && !told; k++)
             told = strstr(g_ptr_array_index(inspection->problems, k), damage) != NULL;
         if (!told)
-            add_problem(inspection, "%s", damage);
+            add_problem(inspection, "%s%s", damage, g_str_has_suffix(damage, ".") ? "" : ".");
     }
 }
 
