@@ -46,32 +46,35 @@ show_passage(HwContextLine *line, const HwDocument *document)
     gtk_label_set_text(line->passage, text);
 }
 
+static char *
+dup_rules_label(const HwRules *rules)
+{
+    g_autofree char *gap = NULL;
+    g_autofree char *seconds = NULL;
+
+    if (!rules)
+        return g_strdup(_("No rule set: measured order"));
+    if (!rules->has_groups)
+        return g_strdup(rules->title);
+    gap = hw_duration_dup_gap(rules->group_gap_ns, hw_duration_decimals(rules->group_gap_ns));
+    seconds = g_strdup_printf("%s s", gap + 1);
+    /* The gap is always in sight; most titles name it. */
+    if (strstr(rules->title, seconds))
+        return g_strdup(rules->title);
+    return g_strdup_printf(_("%s, group gap %s"), rules->title, seconds);
+}
+
 static void
 show_rules(HwContextLine *line)
 {
     const HwRules *rules = hw_session_get_rules(line->session);
-    g_autofree char *text = NULL;
+    g_autofree char *label = dup_rules_label(rules);
     g_autofree char *tip = NULL;
 
-    if (!rules) {
-        text = g_strdup(_("No rule set: measured order"));
-        tip = g_strdup(_("Choose the rule set in force"));
-    } else if (rules->has_groups) {
-        g_autofree char *gap =
-            hw_duration_dup_gap(rules->group_gap_ns, hw_duration_decimals(rules->group_gap_ns));
-        g_autofree char *seconds = g_strdup_printf("%s s", gap + 1);
-
-        /* The gap is always in sight; most titles name it. */
-        if (strstr(rules->title, seconds))
-            text = g_strdup(rules->title);
-        else
-            text = g_strdup_printf(_("%s, group gap %s"), rules->title, seconds);
-        tip = hw_rules_dup_text(rules);
-    } else {
-        text = g_strdup(rules->title);
-        tip = hw_rules_dup_text(rules);
-    }
-    gtk_menu_button_set_label(line->rules, text);
+    if (g_strcmp0(label, gtk_menu_button_get_label(line->rules)) == 0)
+        return;
+    tip = rules ? hw_rules_dup_text(rules) : g_strdup(_("Choose the rule set in force"));
+    gtk_menu_button_set_label(line->rules, label);
     gtk_widget_set_tooltip_text(GTK_WIDGET(line->rules), tip);
 }
 

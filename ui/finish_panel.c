@@ -6,12 +6,20 @@
 
 #include <glib/gi18n.h>
 
+/* How long rows are shown at a stretch. */
+#define SLICE_US 2000
+
 struct _HwFinishPanel {
     GtkBox parent_instance;
 
     HwSession *session;
     bool is_showing; /* rows are being changed by us, not by the user */
-    guint n_rows;
+    guint n_rows;    /* row widgets there are */
+    guint next_row;  /* of the list, to be shown; those before are */
+    guint insert_at; /* where rows are still to be put in, and how many */
+    guint n_to_insert;
+    guint filling; /* source that shows the rest */
+    char *noted;   /* all sentences shown */
 
     GtkLabel *summary;
     GtkListBox *list;
@@ -42,7 +50,7 @@ row_at(HwFinishPanel *panel, guint index)
 }
 
 /* Riders keep their row widgets where they can: what stands before and after the change stays, only the
- * middle is taken out and put in. */
+ * middle is taken out and put in. Taking out is done here; putting in where the filling comes to it. */
 static void
 match_rows(HwFinishPanel *panel, const HwFinishList *list)
 {
@@ -60,10 +68,34 @@ match_rows(HwFinishPanel *panel, const HwFinishList *list)
         gtk_list_box_remove(panel->list, GTK_WIDGET(row_at(panel, head)));
         panel->n_rows--;
     }
-    while (panel->n_rows < n_new) {
-        gtk_list_box_insert(panel->list, hw_finish_row_widget_new(), (int)head);
-        panel->n_rows++;
+    panel->next_row = 0;
+    panel->insert_at = head;
+    panel->n_to_insert = n_new > panel->n_rows ? n_new - panel->n_rows : 0;
+}
+
+/* Shows rows until `until_us` (monotonic; G_MAXINT64: all). True when all are shown. */
+static bool
+fill_rows(HwFinishPanel *panel, gint64 until_us)
+{
+    const HwFinishList *list = hw_session_get_list(panel->session, NULL);
+    guint n_rows = list ? list->rows->len : 0;
+
+    panel->is_showing = true;
+    while (panel->next_row < n_rows && g_get_monotonic_time() < until_us) {
+        guint at = panel->next_row++;
+        const HwFinishRow *row = g_ptr_array_index(list->rows, at);
+
+        if (at >= panel->insert_at && panel->n_to_insert > 0) {
+            gtk_list_box_insert(panel->list, hw_finish_row_widget_new(), (int)at);
+            panel->n_rows++;
+            panel->n_to_insert--;
+        }
+        hw_finish_row_widget_show(
+            row_at(panel, at), list, row,
+            hw_session_get_marker(panel->session, hw_session_find_marker(panel->session, row)));
     }
+    panel->is_showing = false;
+    return panel->next_row >= n_rows;
 }
 
 /* Brings a row into sight, and no farther. */
@@ -85,6 +117,8 @@ show_selection(HwFinishPanel *panel)
     const HwFinishList *list = hw_session_get_list(panel->session, NULL);
     g_autofree char *pair = NULL;
 
+    if (row >= 0 && (guint)row >= panel->next_row)
+        return; /* until the filling has come to it */
     panel->is_showing = true;
     if (row < 0) {
         gtk_list_box_unselect_all(panel->list);
@@ -118,8 +152,17 @@ static void
 show_notes(HwFinishPanel *panel, const HwFinishList *list, const char *sentence)
 {
     const GPtrArray *conflicts = hw_session_get_conflicts(panel->session);
+    g_autoptr(GString) all = g_string_new(sentence);
     GtkWidget *child;
 
+    for (guint i = 0; i < conflicts->len; i++)
+        g_string_append_printf(all, "\n%s", (const char *)g_ptr_array_index(conflicts, i));
+    for (guint i = 0; list && i < list->problems->len; i++)
+        g_string_append_printf(all, "\n%s", (const char *)g_ptr_array_index(list->problems, i));
+    if (g_strcmp0(all->str, panel->noted) == 0)
+        return;
+    g_free(panel->noted);
+    panel->noted = g_strdup(all->str);
     while ((child = gtk_widget_get_first_child(GTK_WIDGET(panel->notes))))
         gtk_box_remove(panel->notes, child);
     if (sentence)
@@ -128,7 +171,27 @@ show_notes(HwFinishPanel *panel, const HwFinishList *list, const char *sentence)
         add_note(panel, g_ptr_array_index(conflicts, i), "error");
     for (guint i = 0; list && i < list->problems->len; i++)
         add_note(panel, g_ptr_array_index(list->problems, i), NULL);
-    gtk_widget_set_visible(panel->notes_window, gtk_widget_get_first_child(GTK_WIDGET(panel->notes)) != NULL);
+    gtk_widget_set_visible(panel->notes_window, *all->str != '\0');
+}
+
+/* A list of 150 is shown in slices, so that no key waits for it. */
+static gboolean
+fill_cb(gpointer data)
+{
+    HwFinishPanel *panel = data;
+
+    if (!fill_rows(panel, g_get_monotonic_time() + SLICE_US))
+        return G_SOURCE_CONTINUE;
+    panel->filling = 0;
+    show_selection(panel);
+    return G_SOURCE_REMOVE;
+}
+
+static void
+finish_filling(HwFinishPanel *panel)
+{
+    g_clear_handle_id(&panel->filling, g_source_remove);
+    fill_rows(panel, G_MAXINT64);
 }
 
 static void
@@ -141,19 +204,14 @@ list_changed_cb(HwFinishPanel *panel)
 
     panel->is_showing = true;
     match_rows(panel, list);
-    for (guint i = 0; i < panel->n_rows; i++) {
-        const HwFinishRow *row = g_ptr_array_index(list->rows, i);
-
-        hw_finish_row_widget_show(
-            row_at(panel, i), list, row,
-            hw_session_get_marker(panel->session, hw_session_find_marker(panel->session, row)));
-    }
     panel->is_showing = false;
+    g_clear_handle_id(&panel->filling, g_source_remove);
+    if (!fill_rows(panel, g_get_monotonic_time() + SLICE_US))
+        panel->filling = g_idle_add(fill_cb, panel);
     show_notes(panel, list, sentence);
     set_text(panel->check, check ? check : "");
     set_text(panel->check_whole, whole ? whole : "");
-    set_text(panel->summary,
-             list && list->unrounded ? _("Finish list: measured order, not rounded") : _("Finish list"));
+    set_text(panel->summary, list && list->unrounded ? _("Measured order, not rounded") : _("Finish list"));
     show_selection(panel);
 }
 
@@ -165,6 +223,7 @@ row_selected_cb(HwFinishPanel *panel, GtkListBoxRow *row)
 
     if (panel->is_showing || !row || !panel->session)
         return;
+    finish_filling(panel);
     list = hw_session_get_list(panel->session, NULL);
     if (!list)
         return;
@@ -195,6 +254,8 @@ hw_finish_panel_dispose(GObject *object)
 
     if (panel->session)
         g_signal_handlers_disconnect_by_data(panel->session, panel);
+    g_clear_handle_id(&panel->filling, g_source_remove);
+    g_clear_pointer(&panel->noted, g_free);
     g_clear_object(&panel->session);
     gtk_widget_dispose_template(GTK_WIDGET(object), HW_TYPE_FINISH_PANEL);
     G_OBJECT_CLASS(hw_finish_panel_parent_class)->dispose(object);

@@ -30,13 +30,6 @@ set_text(GtkLabel *label, const char *text)
 }
 
 static void
-hw_finish_row_widget_dispose(GObject *object)
-{
-    gtk_widget_dispose_template(GTK_WIDGET(object), HW_TYPE_FINISH_ROW_WIDGET);
-    G_OBJECT_CLASS(hw_finish_row_widget_parent_class)->dispose(object);
-}
-
-static void
 hw_finish_row_widget_finalize(GObject *object)
 {
     HwFinishRowWidget *widget = HW_FINISH_ROW_WIDGET(object);
@@ -50,26 +43,61 @@ hw_finish_row_widget_finalize(GObject *object)
 static void
 hw_finish_row_widget_class_init(HwFinishRowWidgetClass *class)
 {
-    GtkWidgetClass *widget_class = GTK_WIDGET_CLASS(class);
-
-    G_OBJECT_CLASS(class)->dispose = hw_finish_row_widget_dispose;
     G_OBJECT_CLASS(class)->finalize = hw_finish_row_widget_finalize;
-    gtk_widget_class_set_template_from_resource(widget_class, "/org/halfwheel/Halfwheel/finish_row.ui");
-    gtk_widget_class_bind_template_child(widget_class, HwFinishRowWidget, place);
-    gtk_widget_class_bind_template_child(widget_class, HwFinishRowWidget, number);
-    gtk_widget_class_bind_template_child(widget_class, HwFinishRowWidget, name);
-    gtk_widget_class_bind_template_child(widget_class, HwFinishRowWidget, team);
-    gtk_widget_class_bind_template_child(widget_class, HwFinishRowWidget, state);
-    gtk_widget_class_bind_template_child(widget_class, HwFinishRowWidget, time);
-    gtk_widget_class_bind_template_child(widget_class, HwFinishRowWidget, gap);
 }
 
+static GtkLabel *
+add_label(GtkWidget *box, float xalign, int width_chars, const char *const *classes)
+{
+    GtkWidget *label = gtk_label_new(NULL);
+
+    gtk_label_set_xalign(GTK_LABEL(label), xalign);
+    gtk_label_set_width_chars(GTK_LABEL(label), width_chars);
+    gtk_widget_set_css_classes(label, (const char **)classes);
+    gtk_box_append(GTK_BOX(box), label);
+    return GTK_LABEL(label);
+}
+
+static GtkWidget *
+add_column(GtkWidget *box, bool expands)
+{
+    GtkWidget *column = gtk_box_new(GTK_ORIENTATION_VERTICAL, 0);
+
+    gtk_widget_set_valign(column, GTK_ALIGN_CENTER);
+    gtk_widget_set_hexpand(column, expands);
+    gtk_box_append(GTK_BOX(box), column);
+    return column;
+}
+
+/* Built by hand, not from a template: a bunch brings 150 of them at once. */
 static void
 hw_finish_row_widget_init(HwFinishRowWidget *widget)
 {
-    gtk_widget_init_template(GTK_WIDGET(widget));
+    static const char *const plain[] = { NULL };
+    static const char *const figures[] = { "numeric", NULL };
+    static const char *const bold_figures[] = { "numeric", "heading", NULL };
+    static const char *const small[] = { "dim-label", "small", NULL };
+    static const char *const small_figures[] = { "numeric", "dim-label", "small", NULL };
+    static const char *const rough[] = { "rough-state", "small", NULL };
+    GtkWidget *box = gtk_box_new(GTK_ORIENTATION_HORIZONTAL, 9);
+    GtkWidget *who, *when;
+
     widget->bib = g_strdup("");
     widget->category = g_strdup("");
+    gtk_widget_add_css_class(GTK_WIDGET(widget), "finish-row");
+    widget->place = add_label(box, 1.0F, 4, figures);
+    widget->number = add_label(box, 1.0F, 4, bold_figures);
+    who = add_column(box, true);
+    widget->name = add_label(who, 0.0F, -1, plain);
+    widget->team = add_label(who, 0.0F, -1, small);
+    gtk_label_set_ellipsize(widget->name, PANGO_ELLIPSIZE_END);
+    gtk_label_set_ellipsize(widget->team, PANGO_ELLIPSIZE_END);
+    when = add_column(box, false);
+    widget->time = add_label(when, 1.0F, -1, figures);
+    widget->gap = add_label(when, 1.0F, -1, small_figures);
+    widget->state = add_label(when, 1.0F, -1, rough);
+    gtk_label_set_text(widget->state, _("to re-read"));
+    gtk_list_box_row_set_child(GTK_LIST_BOX_ROW(widget), box);
 }
 
 GtkWidget *
@@ -123,12 +151,13 @@ add_part(GString *text, const char *part)
         g_string_append_printf(text, ", %s", part);
 }
 
-static void
-show_spoken(HwFinishRowWidget *widget, const char *place, const char *number, const char *name,
-            const char *team, const char *time, const char *gap, bool rough)
+/* The row as one sentence. It holds everything that is shown. */
+static char *
+dup_spoken(const char *place, const char *number, const char *name, const char *team, const char *time,
+           const char *gap, bool rough)
 {
     g_autofree char *bib = g_strdup_printf(_("number %s"), number);
-    g_autoptr(GString) text = g_string_new(place);
+    GString *text = g_string_new(place);
 
     add_part(text, bib);
     add_part(text, name);
@@ -136,11 +165,7 @@ show_spoken(HwFinishRowWidget *widget, const char *place, const char *number, co
     add_part(text, time);
     add_part(text, gap);
     add_part(text, rough ? _("to re-read") : "");
-    if (g_strcmp0(text->str, widget->spoken) == 0)
-        return;
-    g_free(widget->spoken);
-    widget->spoken = g_strdup(text->str);
-    gtk_accessible_update_property(GTK_ACCESSIBLE(widget), GTK_ACCESSIBLE_PROPERTY_LABEL, widget->spoken, -1);
+    return g_string_free(text, FALSE);
 }
 
 void
@@ -154,6 +179,7 @@ hw_finish_row_widget_show(HwFinishRowWidget *widget, const HwFinishList *list, c
     g_autofree char *time = hw_finish_row_dup_time(list, row);
     g_autofree char *gap = hw_finish_row_dup_gap(list, row);
     bool rough = marker && marker->state == HW_MARKER_ROUGH;
+    g_autofree char *spoken = NULL;
 
     /* Where the time says all, the gap would only repeat it. */
     if (strcmp(gap, time) == 0 || (row->has_official_gap && row->official_gap_ns == 0 && !row->same_time)) {
@@ -168,11 +194,15 @@ hw_finish_row_widget_show(HwFinishRowWidget *widget, const HwFinishList *list, c
         g_free(widget->category);
         widget->category = g_strdup(row->category);
     }
+    spoken = dup_spoken(place, number, name, team, time, gap, rough);
+    if (g_strcmp0(spoken, widget->spoken) == 0)
+        return;
+    g_free(widget->spoken);
+    widget->spoken = g_steal_pointer(&spoken);
     set_text(widget->place, place);
     set_text(widget->number, number);
     set_text(widget->name, name);
     set_text(widget->team, team);
-    set_text(widget->state, rough ? _("to re-read") : "");
     set_text(widget->time, time);
     set_text(widget->gap, gap);
     if (row->unnamed || !*row->name)
@@ -184,7 +214,7 @@ hw_finish_row_widget_show(HwFinishRowWidget *widget, const HwFinishList *list, c
     gtk_widget_set_visible(GTK_WIDGET(widget->time), *time != '\0');
     gtk_widget_set_visible(GTK_WIDGET(widget->gap), *gap != '\0');
     gtk_widget_set_tooltip_text(GTK_WIDGET(widget->name), *row->name ? row->name : NULL);
-    show_spoken(widget, place, number, name, team, time, gap, rough);
+    gtk_accessible_update_property(GTK_ACCESSIBLE(widget), GTK_ACCESSIBLE_PROPERTY_LABEL, widget->spoken, -1);
 }
 
 bool

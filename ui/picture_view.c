@@ -109,9 +109,8 @@ document_changed_cb(HwPictureView *view)
 static void
 markers_changed_cb(HwPictureView *view)
 {
-    hw_picture_view_lay_out(view);
+    hw_picture_view_queue_layout(view);
     update_description(view);
-    gtk_widget_queue_draw(GTK_WIDGET(view));
 }
 
 static void
@@ -125,8 +124,7 @@ static void
 style_changed_cb(HwPictureView *view)
 {
     hw_picture_view_read_ink(view);
-    hw_picture_view_lay_out(view);
-    gtk_widget_queue_draw(GTK_WIDGET(view));
+    hw_picture_view_queue_layout(view);
 }
 
 static void
@@ -172,6 +170,7 @@ hw_picture_view_dispose(GObject *object)
 
     if (view->session)
         g_signal_handlers_disconnect_by_data(view->session, view);
+    g_clear_handle_id(&view->laying_out, g_source_remove);
     g_clear_pointer(&view->composer, hw_composer_free);
     g_clear_pointer(&view->shown, hw_composed_free);
     g_clear_pointer(&view->pennants, hw_pennant_layout_free);

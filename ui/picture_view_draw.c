@@ -61,6 +61,7 @@ hw_picture_view_lay_out(HwPictureView *view)
     g_autofree HwPennant *pennants = NULL;
     HwViewMap map;
 
+    g_clear_handle_id(&view->laying_out, g_source_remove);
     g_clear_pointer(&view->pennants, hw_pennant_layout_free);
     if (!view->session || !hw_picture_view_get_map(view, &map))
         return;
@@ -78,6 +79,24 @@ hw_picture_view_lay_out(HwPictureView *view)
     }
     view->pennants = hw_pennant_layout_new(gtk_widget_get_pango_context(GTK_WIDGET(view)), view->shown->axis,
                                            &map, pennants, (int)n_markers, &place, &view->ink);
+}
+
+static gboolean
+lay_out_cb(gpointer data)
+{
+    HwPictureView *view = data;
+
+    view->laying_out = 0;
+    hw_picture_view_lay_out(view);
+    gtk_widget_queue_draw(GTK_WIDGET(view));
+    return G_SOURCE_REMOVE;
+}
+
+void
+hw_picture_view_queue_layout(HwPictureView *view)
+{
+    if (!view->laying_out)
+        view->laying_out = g_idle_add_full(GDK_PRIORITY_REDRAW - 1, lay_out_cb, view, NULL);
 }
 
 static bool

@@ -319,6 +319,8 @@ marker_at(HwPictureView *view, double x, double y)
 {
     HwPennantHit hit;
 
+    if (view->laying_out)
+        hw_picture_view_lay_out(view);
     if (!view->pennants)
         return -1;
     hit = hw_pennant_layout_hit(view->pennants, x, y, y < HW_PICTURE_Y ? 4.0 : 1.0);

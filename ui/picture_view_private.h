@@ -19,7 +19,8 @@ struct _HwPictureView {
     HwSession *session;
     HwComposer *composer;
     HwComposed *shown;         /* NULL until the first picture is there */
-    HwPennantLayout *pennants; /* of what is shown */
+    HwPennantLayout *pennants; /* of what is shown; NULL until laid out */
+    guint laying_out;          /* source that lays them out before the next frame */
     HwInk ink;
     char *description;
     double ghost_column; /* where a marker stood before it was brought to the line; NAN: nowhere */
@@ -49,5 +50,6 @@ void hw_picture_view_drop_ghost(HwPictureView *view);
 /* Draws everything; reads only. */
 void hw_picture_view_draw(HwPictureView *view, GtkSnapshot *snapshot);
 void hw_picture_view_read_ink(HwPictureView *view);
-/* Lays the pennants out for what is shown. */
+/* Lays the pennants out for what is shown: now, or before the next frame. */
 void hw_picture_view_lay_out(HwPictureView *view);
+void hw_picture_view_queue_layout(HwPictureView *view);

@@ -22,7 +22,7 @@ COMMAND_LINE = os.environ["HALFWHEEL_CLI"]
 SAMPLES = os.environ["HALFWHEEL_SAMPLES"]
 APP_ID = "org.halfwheel.Halfwheel"
 WINDOW_PATH = "/org/halfwheel/Halfwheel/window/%d"
-DEADLINE_S = 8
+DEADLINE_S = 60
 
 
 def wait_for(what, probe):
