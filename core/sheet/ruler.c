@@ -10,6 +10,7 @@
 #define LABEL_GAP_PX 14.0
 #define MINOR_GAP_PX 4.0
 #define EDGE_PX 3.0
+#define RANGE_PX 1200.0 /* more than two labelled steps are wide */
 
 int64_t
 hw_ruler_step_ns(double ns_per_px, double min_px)
@@ -88,6 +89,8 @@ typedef struct {
     double free_to_px;
     double label_low_px; /* of the label drawn last; labels come from one side to the other */
     double label_high_px;
+    double from_cell; /* what has to be gone through for that: a little more than is painted */
+    double to_cell;
     double clip_low_px; /* what is being painted: nothing else needs drawing */
     double clip_high_px;
 } Ruler;
@@ -117,12 +120,13 @@ draw_label(Ruler *ruler, double x, int64_t ns)
     double width, height;
     hw_text_size(layout, &width, &height);
     double left = x - width / 2, right = x + width / 2;
-    if (left < ruler->free_from_px || right > ruler->free_to_px)
-        return;
-    if (left < ruler->label_high_px + EDGE_PX && right > ruler->label_low_px - EDGE_PX)
-        return;
+    bool touches = left < ruler->label_high_px + EDGE_PX && right > ruler->label_low_px - EDGE_PX;
+    /* Kept whether drawn or not: each label depends on its neighbour alone, so that tiles of one picture
+     * agree. */
     ruler->label_low_px = left;
     ruler->label_high_px = right;
+    if (touches || left < ruler->free_from_px || right > ruler->free_to_px)
+        return;
     if (right < ruler->clip_low_px || left > ruler->clip_high_px)
         return;
     hw_colour_set(ruler->cr, &ruler->ink->text);
@@ -134,8 +138,8 @@ static void
 draw_stretch(Ruler *ruler, double from_cell, double to_cell, int64_t from_ns, int64_t to_ns)
 {
     int64_t step = ruler->minor_ns > 0 ? ruler->minor_ns : ruler->step_ns;
-    double view_from = MAX(from_cell, ruler->map->first_cell);
-    double view_to = MIN(to_cell, hw_view_map_last_cell(ruler->map));
+    double view_from = MAX(from_cell, ruler->from_cell);
+    double view_to = MIN(to_cell, ruler->to_cell);
     if (view_to <= view_from)
         return;
     int64_t seen_from =
@@ -159,7 +163,7 @@ draw_stretches(Ruler *ruler)
 {
     const HwAxis *axis = ruler->axis;
     double n_cells = (double)hw_axis_get_n_cells(axis);
-    double first = ruler->map->first_cell, last = hw_view_map_last_cell(ruler->map);
+    double first = ruler->from_cell, last = ruler->to_cell;
     if (first < 0)
         draw_stretch(ruler, first, MIN(0, last), hw_axis_instant(axis, first),
                      hw_axis_instant(axis, MIN(0, last)));
@@ -225,6 +229,18 @@ choose_steps(Ruler *ruler)
             ruler->minor_ns = ruler->step_ns / parts;
 }
 
+/* The part of the view whose ticks and labels can show in the clip, and a label's neighbours. */
+static void
+choose_range(Ruler *ruler)
+{
+    const HwViewMap *map = ruler->map;
+    double low = ruler->clip_low_px - RANGE_PX, high = ruler->clip_high_px + RANGE_PX;
+    double a = hw_view_map_cell(map, map->later_left ? high : low);
+    double b = hw_view_map_cell(map, map->later_left ? low : high);
+    ruler->from_cell = MAX(a, map->first_cell);
+    ruler->to_cell = MIN(b, hw_view_map_last_cell(map));
+}
+
 void
 hw_ruler_draw(cairo_t *cr, PangoContext *context, const HwAxis *axis, const HwViewMap *map,
               const HwRulerClock *clock, const char *front, double height_px, const HwInk *ink)
@@ -253,6 +269,7 @@ hw_ruler_draw(cairo_t *cr, PangoContext *context, const HwAxis *axis, const HwVi
     ruler.phase_ns = clock_phase_ns(clock);
     draw_front(&ruler, front != NULL ? front : "FRONT");
     choose_steps(&ruler);
+    choose_range(&ruler);
     draw_stretches(&ruler);
     hw_colour_set(cr, &ink->rule);
     cairo_rectangle(cr, 0, height_px - ink->hairline_px, map->width_px, ink->hairline_px);

@@ -89,6 +89,8 @@ hw_void_hatch_draw(cairo_t *cr, PangoContext *context, const HwAxis *axis, const
     guint n_spans = hw_axis_get_n_spans(axis);
     if (map->width_px <= 0 || bottom <= top || n_spans == 0)
         return;
+    double clip_low, clip_top, clip_high, clip_bottom;
+    cairo_clip_extents(cr, &clip_low, &clip_top, &clip_high, &clip_bottom);
     guint last = hw_axis_span_at(axis, hw_view_map_last_cell(map));
     for (guint i = hw_axis_span_at(axis, map->first_cell); i <= last && i < n_spans; i++) {
         const HwAxisSpan *span = hw_axis_get_span(axis, i);
@@ -104,6 +106,8 @@ hw_void_hatch_draw(cairo_t *cr, PangoContext *context, const HwAxis *axis, const
         if (right <= left)
             continue;
         Box box = { left, top, right - left, bottom - top };
+        if (right < clip_low || left > clip_high)
+            continue;
         draw_lines(cr, &box, ink);
         const HwVoid *hole = hw_time_base_get_void(base, (guint)span->void_index);
         draw_reason(cr, context, &box, words != NULL ? words : "no picture", hole->reason, ink);
