@@ -134,16 +134,10 @@ read_calibration(HwFinishFiles *files, const HwFinishOptions *options, GError **
 static bool
 read_rules(HwFinishFiles *files, const HwFinishOptions *options, GError **error)
 {
-    if (options->rules == NULL) {
-        tell(files, "Rule set", "none: measured order, times not rounded");
+    if (options->rules == NULL)
         return true;
-    }
     files->rules = hw_rules_read(options->rules, error);
-    if (files->rules == NULL)
-        return false;
-    g_autofree char *line = hw_rules_dup_line(files->rules);
-    tell(files, "Rule set", "%s: %s", files->rules->id, line);
-    return true;
+    return files->rules != NULL;
 }
 
 static bool

@@ -1,10 +1,12 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 #include "app/cli/options.h"
 
+#include "core/base/base_error.h"
 #include "core/base/limits.h"
 #include "core/base/number.h"
 #include "core/base/output.h"
 
+#include <stdlib.h>
 #include <string.h>
 
 static const char *const stamp_words[] = { "start", "middle", "end", NULL };
@@ -148,6 +150,34 @@ hw_cli_open_recording(const char *path, const HwScanOptions *options, GError **e
         return NULL;
     }
     return hw_recording_open(path, error);
+}
+
+bool
+hw_cli_lies_in(const char *path, const char *folder)
+{
+    char *inner = realpath(path, NULL);
+    char *outer = realpath(folder, NULL);
+    size_t length = outer != NULL ? strlen(outer) : 0;
+    bool lies = inner != NULL && outer != NULL && strncmp(inner, outer, length) == 0 &&
+                (inner[length] == '\0' || inner[length] == '/' || outer[length - 1] == '/');
+    free(inner);
+    free(outer);
+    return lies;
+}
+
+bool
+hw_cli_check_output(const char *output, const HwRecording *recording, GError **error)
+{
+    if (output == NULL || strcmp(output, "-") == 0)
+        return true;
+    const char *evidence = hw_recording_get_path(recording);
+    g_autofree char *parent = g_path_get_dirname(output);
+    if (!hw_cli_lies_in(output, evidence) && !hw_cli_lies_in(parent, evidence))
+        return true;
+    g_set_error(error, HW_BASE_ERROR, HW_BASE_ERROR_UNSAFE,
+                "%s lies inside the recording %s, which is never changed; name a place beside it.", output,
+                evidence);
+    return false;
 }
 
 void

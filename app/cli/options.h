@@ -79,6 +79,13 @@ bool hw_scan_options_read(const HwScanOptions *options, const char *image, HwIma
  * things itself are a wrong call. NULL with an error. */
 HwRecording *hw_cli_open_recording(const char *path, const HwScanOptions *options, GError **error);
 
+/* Refuses an output inside a recording, or at a bare image's own place: evidence is never changed, even with
+ * --force. `output` may be NULL or "-". */
+bool hw_cli_check_output(const char *output, const HwRecording *recording, GError **error);
+
+/* True where `path` is `folder` itself or lies below it, links followed. */
+bool hw_cli_lies_in(const char *path, const char *folder);
+
 typedef enum { HW_FORMAT_TEXT, HW_FORMAT_JSON, HW_FORMAT_CSV } HwFormat;
 
 /* Where and how results are written. */

@@ -306,6 +306,11 @@ static bool
 make_recording(HwCut *cut, const char *title, const char *camera, const char *path, bool force,
                GError **error)
 {
+    if (hw_cli_lies_in(cut->image, path)) {
+        g_set_error(error, HW_BASE_ERROR, HW_BASE_ERROR_UNSAFE,
+                    "%s lies inside %s and would be lost with it; name another folder.", cut->image, path);
+        return false;
+    }
     g_autoptr(HwOutputFolder) folder = hw_output_folder_open(path, HW_RECORDING_MANIFEST, force, error);
     if (folder == NULL)
         return false;

@@ -318,7 +318,7 @@ run(HwCall *call, HwExit *status, GError **error)
         return false;
 
     g_autoptr(HwRecording) recording = hw_cli_open_recording(call->argv[1], &scan, error);
-    if (recording == NULL)
+    if (recording == NULL || !hw_cli_check_output(result.output, recording, error))
         return false;
     g_auto(HwInspection) inspection = { 0 };
     if (!inspect(&inspection, recording, quick, call->cancellable, error))

@@ -207,7 +207,7 @@ run(HwCall *call, HwExit *status, GError **error)
 
     g_autoptr(HwRecording) recording = hw_cli_open_recording(call->argv[1], &options.scan, error);
     g_auto(HwFinishFiles) files = { 0 };
-    return recording != NULL &&
+    return recording != NULL && hw_cli_check_output(options.result.output, recording, error) &&
            hw_finish_files_read(recording, &options.finish, false, call->cancellable, &files, error) &&
            draw(&options, pair, format, &files, call->cancellable, error);
 }

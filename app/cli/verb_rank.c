@@ -76,7 +76,7 @@ run(HwCall *call, HwExit *status, GError **error)
 
     g_autoptr(HwRecording) recording = hw_cli_open_recording(call->argv[1], &scan, error);
     g_auto(HwFinishFiles) files = { 0 };
-    if (recording == NULL ||
+    if (recording == NULL || !hw_cli_check_output(result.output, recording, error) ||
         !hw_finish_files_read(recording, &finish, true, call->cancellable, &files, error))
         return false;
     g_autofree char *text = dup_result(&files, format);

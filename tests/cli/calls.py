@@ -142,6 +142,25 @@ def an_output_that_is_there_is_refused_without_force(folder):
 
 
 @case
+def evidence_is_never_written_to(folder):
+    calls = outputs(folder)
+    place = folder / "rec"
+    before = {path.name: path.read_bytes() for path in place.iterdir()}
+    for verb in ("inspect", "rank", "picture"):
+        for name in ("recording.json", "block-00001.png", "new.png"):
+            if verb == "picture" and name == "recording.json":
+                continue  # no name of a picture
+            refused(call(*calls[verb], "--force", "-o", place / name), 1, name, "never changed")
+    refused(call("cut", place / "block-00000.png", "--rate", "1000", "--epoch", EPOCH, "--force", "-o", place), 1,
+            "block-00000.png", "lost")
+    image = folder / "finish.png"
+    image.write_bytes(grey_png(0, 64, 4))
+    refused(call("inspect", image, "--rate", "1000", "--epoch", EPOCH, "--force", "-o", image), 1, "never changed")
+    equal(image.read_bytes(), grey_png(0, 64, 4), "the image")
+    equal({path.name: path.read_bytes() for path in place.iterdir()}, before, "the recording")
+
+
+@case
 def an_output_in_a_folder_that_is_not_there_is_refused(folder):
     for words in outputs(folder).values():
         refused(call(*words, "-o", folder / "nowhere" / "out.png"), 1, "nowhere/out.png")

@@ -8,13 +8,19 @@ from halfwheel import (PERIOD_NS, call, case, cases, chunk, close, done, equal, 
                        peak_memory_bytes, png_of_rows, recording, refused, sha256, true)
 
 
+def gigabyte_of_zeros():
+    """A zlib stream (RFC 1950) that unfolds to 2^30 zeros: one packed MiB, closed by a full flush, 1024 times."""
+    packer = zlib.compressobj(9, zlib.DEFLATED, -15)
+    mebibyte = packer.compress(bytes(1 << 20)) + packer.flush(zlib.Z_FULL_FLUSH)
+    # The checksum of n zeros: the sum stays 1, the sum of sums is n.
+    checksum = ((1 << 30) % 65521) << 16 | 1
+    return b"\x78\xda" + mebibyte * 1024 + b"\x03\x00" + struct.pack(">I", checksum)
+
+
 def bomb():
     """A head of 64 × 8 and samples that unfold to a gigabyte."""
-    packer = zlib.compressobj(9)
-    zeros = bytes(1 << 20)
-    body = b"".join(packer.compress(zeros) for _ in range(1024)) + packer.flush()
     head = struct.pack(">IIBBBBB", 64, 8, 8, 0, 0, 0, 0)
-    return (b"\x89PNG\r\n\x1a\n" + chunk(b"IHDR", head) + chunk(b"IDAT", body) + chunk(b"IEND", b""))
+    return (b"\x89PNG\r\n\x1a\n" + chunk(b"IHDR", head) + chunk(b"IDAT", gigabyte_of_zeros()) + chunk(b"IEND", b""))
 
 
 def huge_head(width, height):
@@ -25,10 +31,7 @@ def huge_head(width, height):
 
 def profile_bomb():
     """A colour profile that unfolds to a gigabyte, in front of honest samples."""
-    packer = zlib.compressobj(9)
-    zeros = bytes(1 << 20)
-    body = b"".join(packer.compress(zeros) for _ in range(1024)) + packer.flush()
-    return png_of_rows(64, 8, 8, 0, [bytes(64)] * 8, extra=chunk(b"iCCP", b"x\0\0" + body))
+    return png_of_rows(64, 8, 8, 0, [bytes(64)] * 8, extra=chunk(b"iCCP", b"x\0\0" + gigabyte_of_zeros()))
 
 
 def check_void(folder, place, reason, after=128, length=64):
