@@ -1,4 +1,8 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 #include "core/ruling/ruling_error.h"
 
-G_DEFINE_QUARK(hw - ruling - error - quark, hw_ruling_error)
+GQuark
+hw_ruling_error_quark(void)
+{
+    return g_quark_from_static_string("hw-ruling-error-quark");
+}

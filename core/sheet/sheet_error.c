@@ -1,6 +1,8 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 #include "core/sheet/sheet_error.h"
 
-/* clang-format off */
-G_DEFINE_QUARK(hw-sheet-error-quark, hw_sheet_error)
-/* clang-format on */
+GQuark
+hw_sheet_error_quark(void)
+{
+    return g_quark_from_static_string("hw-sheet-error-quark");
+}
