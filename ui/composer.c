@@ -5,15 +5,21 @@
 
 /* A picture with holes is shown only where the whole one keeps the eye waiting this long. */
 #define PATIENCE_MS 80
+/* While the whole one is being made, what has been decoded so far is shown this often. */
+#define PEEK_MS 300
 
 struct HwComposer {
-    GThreadPool *pool; /* one thread */
+    GThreadPool *pool; /* one thread makes pictures, another looks at what there is meanwhile */
     HwComposedFunc func;
     gpointer user_data;
     gint generation; /* atomic: of the newest request */
     GCancellable *cancellable;
     HwComposed *held; /* with holes, waiting for its moment */
     guint held_source;
+    guint peek_source;
+    HwStrip *strip; /* of the newest request, for further looks */
+    HwAxis *axis;
+    HwViewMap map;
     gint refs; /* atomic: the owner's, and one for each answer under way */
     gint is_closed;
 };
@@ -25,6 +31,7 @@ typedef struct {
     HwAxis *axis;
     HwViewMap map;
     GCancellable *cancellable;
+    bool only_cached;
 } Request;
 
 typedef struct {
@@ -70,12 +77,31 @@ drop_held(HwComposer *composer)
     g_clear_pointer(&composer->held, hw_composed_free);
 }
 
+static void
+stop_peeking(HwComposer *composer)
+{
+    g_clear_handle_id(&composer->peek_source, g_source_remove);
+    g_clear_pointer(&composer->strip, hw_strip_unref);
+    g_clear_pointer(&composer->axis, hw_axis_unref);
+}
+
+static void push(HwComposer *composer, bool only_cached);
+
+static gboolean
+peek_cb(gpointer data)
+{
+    push(data, true);
+    return G_SOURCE_CONTINUE;
+}
+
 static gboolean
 show_held_cb(gpointer data)
 {
     HwComposer *composer = data;
 
     composer->held_source = 0;
+    if (!composer->peek_source)
+        composer->peek_source = g_timeout_add(PEEK_MS, peek_cb, composer);
     composer->func(g_steal_pointer(&composer->held), composer->user_data);
     return G_SOURCE_REMOVE;
 }
@@ -91,6 +117,7 @@ answer_cb(gpointer data)
         hw_composed_free(answer->composed);
     } else if (answer->composed->is_whole || answer->composed->failure) {
         drop_held(composer);
+        stop_peeking(composer);
         composer->func(answer->composed, composer->user_data);
     } else {
         drop_held(composer);
@@ -193,7 +220,7 @@ work(gpointer data, gpointer user_data)
 
     (void)user_data;
     if (request->generation == g_atomic_int_get(&request->composer->generation) &&
-        compose_cached(request, &tone))
+        compose_cached(request, &tone) && !request->only_cached)
         compose_whole(request, &tone);
     request_free(request);
 }
@@ -206,7 +233,7 @@ hw_composer_new(HwComposedFunc func, gpointer user_data)
     composer->func = func;
     composer->user_data = user_data;
     composer->refs = 1;
-    composer->pool = g_thread_pool_new(work, NULL, 1, FALSE, NULL);
+    composer->pool = g_thread_pool_new(work, NULL, 2, FALSE, NULL);
     return composer;
 }
 
@@ -229,24 +256,34 @@ hw_composer_cancel(HwComposer *composer)
         g_cancellable_cancel(composer->cancellable);
     g_clear_object(&composer->cancellable);
     drop_held(composer);
+    stop_peeking(composer);
+}
+
+static void
+push(HwComposer *composer, bool only_cached)
+{
+    Request *request = g_new0(Request, 1);
+
+    request->composer = composer;
+    request->generation = g_atomic_int_get(&composer->generation);
+    request->strip = hw_strip_ref(composer->strip);
+    request->axis = hw_axis_ref(composer->axis);
+    request->map = composer->map;
+    request->cancellable = g_object_ref(composer->cancellable);
+    request->only_cached = only_cached;
+    g_atomic_int_inc(&composer->refs);
+    g_thread_pool_push(composer->pool, request, NULL);
 }
 
 void
 hw_composer_request(HwComposer *composer, HwStrip *strip, HwAxis *axis, const HwViewMap *map)
 {
-    Request *request;
-
     hw_composer_cancel(composer);
     if (map->width_px <= 0 || map->height_px <= 0)
         return;
     composer->cancellable = g_cancellable_new();
-    request = g_new0(Request, 1);
-    request->composer = composer;
-    request->generation = g_atomic_int_get(&composer->generation);
-    request->strip = hw_strip_ref(strip);
-    request->axis = hw_axis_ref(axis);
-    request->map = *map;
-    request->cancellable = g_object_ref(composer->cancellable);
-    g_atomic_int_inc(&composer->refs);
-    g_thread_pool_push(composer->pool, request, NULL);
+    composer->strip = hw_strip_ref(strip);
+    composer->axis = hw_axis_ref(axis);
+    composer->map = *map;
+    push(composer, false);
 }

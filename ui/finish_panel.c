@@ -18,10 +18,14 @@ struct _HwFinishPanel {
     guint next_row;  /* of the list, to be shown; those before are */
     guint insert_at; /* where rows are still to be put in, and how many */
     guint n_to_insert;
-    guint filling; /* source that shows the rest */
-    char *noted;   /* all sentences shown */
+    bool follows;      /* the selected row is kept in sight */
+    bool is_scrolling; /* by us */
+    guint scrolling;   /* source that does so after a layout */
+    guint filling;     /* source that shows the rest */
+    char *noted;       /* all sentences shown */
 
     GtkLabel *summary;
+    GtkScrolledWindow *list_window;
     GtkListBox *list;
     GtkLabel *pair;
     GtkWidget *notes_window;
@@ -98,16 +102,47 @@ fill_rows(HwFinishPanel *panel, gint64 until_us)
     return panel->next_row >= n_rows;
 }
 
-/* Brings a row into sight, and no farther. */
+/* Brings the selected row into sight, and no farther. Rows just put in have no place yet, so this is done
+ * again as often as the list is laid out, until somebody scrolls. */
 static void
-scroll_to(HwFinishPanel *panel, GtkWidget *row)
+scroll_to_selected(HwFinishPanel *panel)
 {
     GtkAdjustment *adjustment = gtk_list_box_get_adjustment(panel->list);
+    GtkListBoxRow *row = gtk_list_box_get_selected_row(panel->list);
     graphene_rect_t bounds;
 
-    if (adjustment && gtk_widget_compute_bounds(row, GTK_WIDGET(panel->list), &bounds))
-        gtk_adjustment_clamp_page(adjustment, (double)bounds.origin.y,
-                                  (double)(bounds.origin.y + bounds.size.height));
+    if (!panel->follows || !adjustment || !row ||
+        !gtk_widget_compute_bounds(GTK_WIDGET(row), GTK_WIDGET(panel->list), &bounds))
+        return;
+    panel->is_scrolling = true;
+    gtk_adjustment_clamp_page(adjustment, (double)bounds.origin.y,
+                              (double)(bounds.origin.y + bounds.size.height));
+    panel->is_scrolling = false;
+}
+
+static gboolean
+scroll_cb(gpointer data)
+{
+    HwFinishPanel *panel = data;
+
+    panel->scrolling = 0;
+    scroll_to_selected(panel);
+    return G_SOURCE_REMOVE;
+}
+
+/* The list was laid out: what is set during that is lost, so it waits until after. */
+static void
+laid_out_cb(HwFinishPanel *panel)
+{
+    if (panel->follows && !panel->scrolling)
+        panel->scrolling = g_idle_add(scroll_cb, panel);
+}
+
+static void
+scrolled_cb(HwFinishPanel *panel)
+{
+    if (!panel->is_scrolling)
+        panel->follows = false;
 }
 
 static void
@@ -124,7 +159,8 @@ show_selection(HwFinishPanel *panel)
         gtk_list_box_unselect_all(panel->list);
     } else {
         gtk_list_box_select_row(panel->list, GTK_LIST_BOX_ROW(row_at(panel, (guint)row)));
-        scroll_to(panel, GTK_WIDGET(row_at(panel, (guint)row)));
+        panel->follows = true;
+        scroll_to_selected(panel);
         pair = hw_pair_words_dup(hw_pair_words_find_ahead(list, (guint)row),
                                  g_ptr_array_index(list->rows, (guint)row));
     }
@@ -255,6 +291,7 @@ hw_finish_panel_dispose(GObject *object)
     if (panel->session)
         g_signal_handlers_disconnect_by_data(panel->session, panel);
     g_clear_handle_id(&panel->filling, g_source_remove);
+    g_clear_handle_id(&panel->scrolling, g_source_remove);
     g_clear_pointer(&panel->noted, g_free);
     g_clear_object(&panel->session);
     gtk_widget_dispose_template(GTK_WIDGET(object), HW_TYPE_FINISH_PANEL);
@@ -271,6 +308,7 @@ hw_finish_panel_class_init(HwFinishPanelClass *class)
                                       NULL, G_TYPE_NONE, 0);
     gtk_widget_class_set_template_from_resource(widget_class, "/org/halfwheel/Halfwheel/finish_panel.ui");
     gtk_widget_class_bind_template_child(widget_class, HwFinishPanel, summary);
+    gtk_widget_class_bind_template_child(widget_class, HwFinishPanel, list_window);
     gtk_widget_class_bind_template_child(widget_class, HwFinishPanel, list);
     gtk_widget_class_bind_template_child(widget_class, HwFinishPanel, pair);
     gtk_widget_class_bind_template_child(widget_class, HwFinishPanel, notes_window);
@@ -284,7 +322,12 @@ hw_finish_panel_class_init(HwFinishPanelClass *class)
 static void
 hw_finish_panel_init(HwFinishPanel *panel)
 {
+    GtkAdjustment *adjustment;
+
     gtk_widget_init_template(GTK_WIDGET(panel));
+    adjustment = gtk_scrolled_window_get_vadjustment(panel->list_window);
+    g_signal_connect_object(adjustment, "changed", G_CALLBACK(laid_out_cb), panel, G_CONNECT_SWAPPED);
+    g_signal_connect_object(adjustment, "value-changed", G_CALLBACK(scrolled_cb), panel, G_CONNECT_SWAPPED);
 }
 
 void

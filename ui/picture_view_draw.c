@@ -242,6 +242,8 @@ hw_picture_view_draw(HwPictureView *view, GtkSnapshot *snapshot)
         return;
     scale = hw_words_dup_scale(view->shown->map.cells_per_px);
     draw_plate(view, snapshot, scale, width - 8.0, height - 8.0);
+    if (!view->shown->is_whole)
+        draw_plate(view, snapshot, _("the picture is being read…"), width - 8.0, height - 40.0);
     if (hw_session_get_mirrored(view->session))
         draw_plate(view, snapshot, _("mirrored view: riders face the wrong way"), width - 8.0,
                    HW_PICTURE_Y + 34.0);
