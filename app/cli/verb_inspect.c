@@ -123,8 +123,7 @@ judge_time_base(HwInspection *inspection)
 {
     const HwTimeBase *base = hw_strip_get_time_base(inspection->strip);
     for (guint i = 0; i < hw_time_base_get_n_voids(base); i++) {
-        const HwVoid *gap = hw_time_base_get_void(base, i);
-        if (gap->kind == HW_VOID_DAMAGED || is_inside_block(inspection->strip, gap))
+        if (is_inside_block(inspection->strip, hw_time_base_get_void(base, i)))
             inspection->false_found = true;
     }
     if (hw_time_base_get_n_drops(base) > 0)
