@@ -20,6 +20,7 @@ static const GOptionEntry entries[] = {
     { "startlist", 0, 0, G_OPTION_ARG_FILENAME, NULL, N_("Start list (CSV)"), N_("FILE") },
     { "race", 0, 0, G_OPTION_ARG_FILENAME, NULL, N_("Race (JSON)"), N_("FILE") },
     { "rules", 0, 0, G_OPTION_ARG_FILENAME, NULL, N_("Rule set: an id or a file"), N_("ID|FILE") },
+    { "passage", 0, 0, G_OPTION_ARG_STRING, NULL, N_("Passage to rank, of several"), N_("NAME") },
     { "rate", 0, 0, G_OPTION_ARG_STRING, NULL, N_("Scan rate of a bare image, columns per second"),
       N_("HZ") },
     { "epoch", 0, 0, G_OPTION_ARG_STRING, NULL, N_("Instant of a bare image's first column (RFC 3339)"),
@@ -149,6 +150,7 @@ hw_application_command_line(GApplication *app, GApplicationCommandLine *line)
     request->start_list = dup_path(line, options, "startlist");
     request->race = dup_path(line, options, "race");
     request->rules = dup_rules(line, options);
+    g_variant_dict_lookup(options, "passage", "s", &request->passage);
     if (!read_scan(options, request, &sentence)) {
         g_application_command_line_printerr(line, "halfwheel: %s\n", sentence);
         return 2;

@@ -14,6 +14,8 @@ struct _HwContextLine {
 
     GtkLabel *event;
     GtkLabel *passage;
+    GtkMenuButton *passages; /* in its place where there are several */
+    char *listed;            /* names in the menu */
     GtkMenuButton *rules;
     GtkLabel *travel;
     GtkLabel *release;
@@ -31,19 +33,48 @@ show_event(HwContextLine *line, const HwDocument *document)
     gtk_label_set_text(line->event, *event ? event : name);
 }
 
+/* The menu of passages, where markers belong to several. */
+static void
+show_passages(HwContextLine *line, const char *text)
+{
+    g_autoptr(GPtrArray) names = hw_session_dup_passages(line->session);
+    g_autoptr(GMenu) menu = NULL;
+    g_autoptr(GString) listed = g_string_new(NULL);
+
+    gtk_widget_set_visible(GTK_WIDGET(line->passages), names->len > 1);
+    gtk_widget_set_visible(GTK_WIDGET(line->passage), names->len <= 1);
+    for (guint i = 0; i < names->len; i++)
+        g_string_append_printf(listed, "%s\n", (const char *)g_ptr_array_index(names, i));
+    if (g_strcmp0(gtk_menu_button_get_label(line->passages), text) != 0)
+        gtk_menu_button_set_label(line->passages, text);
+    if (g_strcmp0(listed->str, line->listed) == 0)
+        return;
+    g_free(line->listed);
+    line->listed = g_strdup(listed->str);
+    menu = g_menu_new();
+    for (guint i = 0; i < names->len; i++) {
+        const char *name = g_ptr_array_index(names, i);
+        g_autoptr(GMenuItem) item = g_menu_item_new(name, NULL);
+
+        g_menu_item_set_action_and_target(item, "win.passage", "s", name);
+        g_menu_append_item(menu, item);
+    }
+    gtk_menu_button_set_menu_model(line->passages, G_MENU_MODEL(menu));
+}
+
 static void
 show_passage(HwContextLine *line, const HwDocument *document)
 {
+    const char *name = hw_session_get_passage(line->session);
     const HwRace *race = document->race;
-    g_autofree char *text = NULL;
+    const char *text = name;
 
-    if (!race || !race->has_passage)
-        text = g_strdup(_("Passage not stated"));
-    else if (*race->passage_name)
-        text = g_strdup(race->passage_name);
-    else
-        text = g_strdup(hw_words_passage_kind(race->passage_kind));
-    gtk_label_set_text(line->passage, text);
+    if (!*text)
+        text =
+            race && race->has_passage ? hw_words_passage_kind(race->passage_kind) : _("Passage not stated");
+    if (g_strcmp0(gtk_label_get_text(line->passage), text) != 0)
+        gtk_label_set_text(line->passage, text);
+    show_passages(line, text);
 }
 
 static char *
@@ -139,6 +170,7 @@ hw_context_line_dispose(GObject *object)
     if (line->session)
         g_signal_handlers_disconnect_by_data(line->session, line);
     g_clear_object(&line->session);
+    g_clear_pointer(&line->listed, g_free);
     gtk_widget_dispose_template(GTK_WIDGET(object), HW_TYPE_CONTEXT_LINE);
     G_OBJECT_CLASS(hw_context_line_parent_class)->dispose(object);
 }
@@ -152,6 +184,7 @@ hw_context_line_class_init(HwContextLineClass *class)
     gtk_widget_class_set_template_from_resource(widget_class, "/org/halfwheel/Halfwheel/context_line.ui");
     gtk_widget_class_bind_template_child(widget_class, HwContextLine, event);
     gtk_widget_class_bind_template_child(widget_class, HwContextLine, passage);
+    gtk_widget_class_bind_template_child(widget_class, HwContextLine, passages);
     gtk_widget_class_bind_template_child(widget_class, HwContextLine, rules);
     gtk_widget_class_bind_template_child(widget_class, HwContextLine, travel);
     gtk_widget_class_bind_template_child(widget_class, HwContextLine, release);

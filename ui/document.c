@@ -30,6 +30,7 @@ hw_open_request_copy(const HwOpenRequest *request)
     copy->start_list = g_strdup(request->start_list);
     copy->race = g_strdup(request->race);
     copy->rules = g_strdup(request->rules);
+    copy->passage = g_strdup(request->passage);
     copy->scan.epoch_text = g_strdup(request->scan.epoch_text);
     return copy;
 }
@@ -44,6 +45,7 @@ hw_open_request_free(HwOpenRequest *request)
     g_free(request->start_list);
     g_free(request->race);
     g_free(request->rules);
+    g_free(request->passage);
     g_free(request->scan.epoch_text);
     g_free(request);
 }
@@ -201,6 +203,7 @@ hw_document_derive_anew(const HwOpenRequest *request, const char *markers_csv, G
     input.race = document->race;
     input.rules = document->rules;
     input.calibration = document->calibration;
+    input.passage = document->request->passage;
     list = hw_finish_list_derive(&input, cancellable, error);
     document->strip = input.strip;
     return list;

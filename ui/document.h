@@ -19,7 +19,8 @@ typedef struct {
     char *markers;
     char *start_list;
     char *race;
-    char *rules; /* an id or a path; NULL: no rule set */
+    char *rules;   /* an id or a path; NULL: no rule set */
+    char *passage; /* to rank, of several; NULL: the race's, or the only one */
     bool has_scan;
     HwImageScan scan; /* for a bare image */
 } HwOpenRequest;

@@ -27,6 +27,7 @@ struct _HwFinishPanel {
     GtkLabel *summary;
     GtkScrolledWindow *list_window;
     GtkListBox *list;
+    GtkLabel *empty; /* what stands in a list without rows */
     GtkLabel *pair;
     GtkWidget *notes_window;
     GtkBox *notes;
@@ -245,6 +246,11 @@ list_changed_cb(HwFinishPanel *panel)
     if (!fill_rows(panel, g_get_monotonic_time() + SLICE_US))
         panel->filling = g_idle_add(fill_cb, panel);
     show_notes(panel, list, sentence);
+    set_text(panel->empty, sentence
+                               ? _("The list cannot be made: see below why.")
+                               : _("Nobody is marked yet. Put the reading line on a front tyre, type the "
+                                   "number, press Enter."));
+    gtk_widget_set_visible(GTK_WIDGET(panel->empty), !list || list->rows->len == 0);
     set_text(panel->check, check ? check : "");
     set_text(panel->check_whole, whole ? whole : "");
     set_text(panel->summary, list && list->unrounded ? _("Measured order, not rounded") : _("Finish list"));
@@ -283,6 +289,28 @@ row_activated_cb(HwFinishPanel *panel, GtkListBoxRow *row)
         g_signal_emit(panel, signals[EDIT_NAME], 0);
 }
 
+/* Categories are parted by their names. */
+static void
+header_cb(GtkListBoxRow *row, GtkListBoxRow *before, gpointer data)
+{
+    const char *category = hw_finish_row_widget_get_category(HW_FINISH_ROW_WIDGET(row));
+    const char *former = before ? hw_finish_row_widget_get_category(HW_FINISH_ROW_WIDGET(before)) : "";
+    GtkWidget *header = gtk_list_box_row_get_header(row);
+
+    (void)data;
+    if (g_strcmp0(category, former) == 0) {
+        gtk_list_box_row_set_header(row, NULL);
+        return;
+    }
+    if (header && g_strcmp0(gtk_label_get_text(GTK_LABEL(header)), category) == 0)
+        return;
+    header = gtk_label_new(category);
+    gtk_label_set_xalign(GTK_LABEL(header), 0.0F);
+    gtk_widget_add_css_class(header, "heading");
+    gtk_widget_add_css_class(header, "panel-line");
+    gtk_list_box_row_set_header(row, header);
+}
+
 static void
 hw_finish_panel_dispose(GObject *object)
 {
@@ -310,6 +338,7 @@ hw_finish_panel_class_init(HwFinishPanelClass *class)
     gtk_widget_class_bind_template_child(widget_class, HwFinishPanel, summary);
     gtk_widget_class_bind_template_child(widget_class, HwFinishPanel, list_window);
     gtk_widget_class_bind_template_child(widget_class, HwFinishPanel, list);
+    gtk_widget_class_bind_template_child(widget_class, HwFinishPanel, empty);
     gtk_widget_class_bind_template_child(widget_class, HwFinishPanel, pair);
     gtk_widget_class_bind_template_child(widget_class, HwFinishPanel, notes_window);
     gtk_widget_class_bind_template_child(widget_class, HwFinishPanel, notes);
@@ -325,6 +354,7 @@ hw_finish_panel_init(HwFinishPanel *panel)
     GtkAdjustment *adjustment;
 
     gtk_widget_init_template(GTK_WIDGET(panel));
+    gtk_list_box_set_header_func(panel->list, header_cb, NULL, NULL);
     adjustment = gtk_scrolled_window_get_vadjustment(panel->list_window);
     g_signal_connect_object(adjustment, "changed", G_CALLBACK(laid_out_cb), panel, G_CONNECT_SWAPPED);
     g_signal_connect_object(adjustment, "value-changed", G_CALLBACK(scrolled_cb), panel, G_CONNECT_SWAPPED);

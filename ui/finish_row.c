@@ -118,13 +118,13 @@ dup_place(const HwFinishRow *row)
 }
 
 static char *
-dup_name(const HwFinishRow *row)
+dup_name(const HwFinishList *list, const HwFinishRow *row)
 {
     if (row->unnamed)
         return g_strdup(_("not yet named"));
     if (*row->name)
         return g_strdup(row->name);
-    return g_strdup(row->in_start_list ? "" : _("not in the start list"));
+    return g_strdup(row->in_start_list || !list->has_start_list ? "" : _("not in the start list"));
 }
 
 static char *
@@ -174,7 +174,7 @@ hw_finish_row_widget_show(HwFinishRowWidget *widget, const HwFinishList *list, c
 {
     g_autofree char *place = dup_place(row);
     g_autofree char *number = dup_number(row);
-    g_autofree char *name = dup_name(row);
+    g_autofree char *name = dup_name(list, row);
     g_autofree char *team = dup_team(row);
     g_autofree char *time = hw_finish_row_dup_time(list, row);
     g_autofree char *gap = hw_finish_row_dup_gap(list, row);
@@ -193,6 +193,7 @@ hw_finish_row_widget_show(HwFinishRowWidget *widget, const HwFinishList *list, c
     if (strcmp(widget->category, row->category) != 0) {
         g_free(widget->category);
         widget->category = g_strdup(row->category);
+        gtk_list_box_row_changed(GTK_LIST_BOX_ROW(widget));
     }
     spoken = dup_spoken(place, number, name, team, time, gap, rough);
     if (g_strcmp0(spoken, widget->spoken) == 0)
@@ -221,4 +222,10 @@ bool
 hw_finish_row_widget_is_of(HwFinishRowWidget *widget, const HwFinishRow *row)
 {
     return strcmp(widget->bib, row->bib) == 0 && strcmp(widget->category, row->category) == 0;
+}
+
+const char *
+hw_finish_row_widget_get_category(HwFinishRowWidget *widget)
+{
+    return widget->category;
 }

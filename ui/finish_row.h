@@ -18,3 +18,6 @@ void hw_finish_row_widget_show(HwFinishRowWidget *widget, const HwFinishList *li
 
 /* The same rider as the row shows now. */
 bool hw_finish_row_widget_is_of(HwFinishRowWidget *widget, const HwFinishRow *row);
+
+/* Its category; borrowed. */
+const char *hw_finish_row_widget_get_category(HwFinishRowWidget *widget);

@@ -104,29 +104,72 @@ dup_status_doubt(const HwRider *rider, const char *bib)
     }
 }
 
+/* "4 women" is number 4 of the category that begins so, where a rider of the list is meant by it; anything
+ * else is a bib as it stands. */
+static void
+part_category(const HwStartList *list, HwNaming *naming)
+{
+    const char *space = naming->bib ? strrchr(naming->bib, ' ') : NULL;
+    g_autofree char *bib = NULL;
+    g_autofree char *wanted = NULL;
+
+    if (!list || !space)
+        return;
+    bib = g_strstrip(g_strndup(naming->bib, (gsize)(space - naming->bib)));
+    wanted = g_utf8_casefold(space + 1, -1);
+    for (guint i = 0; i < list->riders->len; i++) {
+        const HwRider *rider = g_ptr_array_index(list->riders, i);
+        g_autofree char *category = g_utf8_casefold(rider->category, -1);
+
+        if (strcmp(rider->bib, bib) != 0 || !g_str_has_prefix(category, wanted))
+            continue;
+        g_free(naming->bib);
+        naming->bib = g_steal_pointer(&bib);
+        naming->category = g_strdup(rider->category);
+        return;
+    }
+}
+
+/* Two riders with one number: a place would go to whoever the list finds first. NULL: one rider, or none. */
+static char *
+dup_ambiguity(const HwStartList *list, const HwNaming *naming)
+{
+    bool ambiguous = false;
+
+    if (!list || !naming->bib || naming->category)
+        return NULL;
+    hw_start_list_find(list, naming->bib, NULL, &ambiguous);
+    for (guint i = 0; ambiguous && i < list->riders->len; i++) {
+        const HwRider *rider = g_ptr_array_index(list->riders, i);
+
+        if (strcmp(rider->bib, naming->bib) == 0)
+            return g_strdup_printf(_("Number %s is worn in several categories: add which, as in “%s %s”."),
+                                   naming->bib, naming->bib, rider->category);
+    }
+    return NULL;
+}
+
 /* What is doubtful about the number itself; NULL: nothing. */
 static char *
 dup_bib_doubt(HwSession *session, HwNaming *naming)
 {
-    const HwDocument *document = hw_session_get_document(session);
-    int used = hw_session_find_bib(session, naming->bib);
+    const HwStartList *list = hw_session_get_document(session)->start_list;
+    int used = hw_session_find_rider(session, naming->bib, naming->category, naming->marker);
     const HwRider *rider = NULL;
     bool ambiguous = false;
 
-    if (document->start_list)
-        rider = hw_start_list_find(document->start_list, naming->bib, NULL, &ambiguous);
+    if (list)
+        rider = hw_start_list_find(list, naming->bib, naming->category, &ambiguous);
     if (rider) {
         g_free(naming->rider);
         naming->rider = hw_words_dup_rider(rider);
     }
-    if (used >= 0 && used != naming->marker) {
+    if (used >= 0) {
         g_autofree char *time = hw_words_dup_time_of_day(session, marker_cell(session, used));
 
         return g_strdup_printf(_("%s already stands at %s."), naming->bib, time);
     }
-    if (ambiguous)
-        return g_strdup_printf(_("%s is in more than one category of the start list."), naming->bib);
-    if (document->start_list && !rider)
+    if (list && !rider)
         return g_strdup_printf(_("No rider has number %s in the start list."), naming->bib);
     return rider ? dup_status_doubt(rider, naming->bib) : NULL;
 }
@@ -171,6 +214,7 @@ hw_naming_make(HwSession *session, const char *text, double reach_px)
 
     naming->rider = g_strdup("");
     naming->bib = *typed && *typed != '?' ? g_strdup(typed) : NULL;
+    part_category(hw_session_get_document(session)->start_list, naming);
     naming->marker = hw_naming_find_marker(session, reach_px, &n_within);
     if (!hw_session_is_in_view(session, line))
         return refuse(naming,
@@ -184,6 +228,9 @@ hw_naming_make(HwSession *session, const char *text, double reach_px)
         return refuse(naming, g_strdup_printf(_("There is no picture here: %s. Move the line."), reason));
     if (naming->marker < 0 && !hw_axis_column(hw_session_get_axis(session), line, &column))
         return refuse(naming, g_strdup(_("The line stands outside the picture: move it.")));
+    doubt = dup_ambiguity(hw_session_get_document(session)->start_list, naming);
+    if (doubt)
+        return refuse(naming, doubt);
     if (naming->bib)
         doubt = dup_bib_doubt(session, naming);
     near = naming->marker < 0 ? find_near(session, -1, &away_ns) : -1;
@@ -201,6 +248,7 @@ hw_naming_free(HwNaming *naming)
     if (!naming)
         return;
     g_free(naming->bib);
+    g_free(naming->category);
     g_free(naming->rider);
     g_free(naming->sentence);
     g_free(naming);
@@ -210,7 +258,7 @@ bool
 hw_naming_equal(const HwNaming *a, const HwNaming *b)
 {
     return a->state == b->state && a->marker == b->marker && g_strcmp0(a->bib, b->bib) == 0 &&
-           strcmp(a->sentence, b->sentence) == 0;
+           g_strcmp0(a->category, b->category) == 0 && strcmp(a->sentence, b->sentence) == 0;
 }
 
 bool
@@ -220,9 +268,9 @@ hw_naming_commit(HwSession *session, const HwNaming *naming)
         return false;
     if (naming->marker >= 0) {
         hw_session_set_selection(session, naming->marker);
-        hw_session_rename_marker(session, naming->marker, naming->bib);
+        hw_session_rename_marker(session, naming->marker, naming->bib, naming->category);
         return true;
     }
     return hw_session_place_marker(session, hw_session_get_reading_cell(session),
-                                   hw_session_get_hand_row(session), naming->bib) >= 0;
+                                   hw_session_get_hand_row(session), naming->bib, naming->category) >= 0;
 }

@@ -16,12 +16,13 @@ typedef struct {
     HwNamingState state;
     int marker;     /* −1: one is placed */
     char *bib;      /* as it will be written; NULL: unnamed */
+    char *category; /* where the bib is worn in several; else NULL */
     char *rider;    /* name and team; "" where not known */
     char *sentence; /* what Enter does, what is in doubt, or why not */
 } HwNaming;
 
-/* `text` as typed ("" or "?": unnamed); reach_px: how near the line a marker is under it, in device pixels.
- * Something must be open. */
+/* `text` as typed ("" or "?": unnamed; "4 women": number 4 of that category, or of the one that begins so);
+ * reach_px: how near the line a marker is under it, in device pixels. Something must be open. */
 HwNaming *hw_naming_make(HwSession *session, const char *text, double reach_px);
 void hw_naming_free(HwNaming *naming);
 

@@ -245,7 +245,7 @@ hw_picture_view_place(HwPictureView *view)
         hw_picture_view_emit_text(view, "said", _("The reading line is out of view: bring it back first."));
         return;
     }
-    if (hw_session_place_marker(view->session, cell, hw_session_get_hand_row(view->session), NULL) < 0)
+    if (hw_session_place_marker(view->session, cell, hw_session_get_hand_row(view->session), NULL, NULL) < 0)
         hw_picture_view_emit_text(view, "said",
                                   _("There is no picture at the line: no marker can stand here."));
 }

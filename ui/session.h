@@ -44,6 +44,14 @@ void hw_session_set_all_checked(HwSession *session);
 /* Takes the rules (NULL: none), read from `id_or_path`. */
 void hw_session_set_rules(HwSession *session, HwRules *rules, const char *id_or_path);
 
+/* The names of the passages that markers belong to, in the order of the markers (char*, owned by the caller).
+ */
+GPtrArray *hw_session_dup_passages(HwSession *session);
+/* The passage that is judged; NULL: the race's, or the only one. */
+void hw_session_set_passage(HwSession *session, const char *passage);
+/* The one the list is of; "" where none is named. Borrowed. */
+const char *hw_session_get_passage(HwSession *session);
+
 /* The list, derived; NULL with a sentence in *sentence (borrowed) where it cannot be. */
 const HwFinishList *hw_session_get_list(HwSession *session, const char **sentence);
 /* Sentences of the session itself, beside the list's own problems (a bib used twice). Borrowed, char*. */
@@ -52,11 +60,13 @@ const GPtrArray *hw_session_get_conflicts(HwSession *session);
 int hw_session_find_row(HwSession *session, int marker);
 int hw_session_find_marker(HwSession *session, const HwFinishRow *row);
 
-/* Acts on markers. Each is one step of undo, unless it continues the one before. `cell` must lie on a
- * readable column: else −1 or false, and nothing changes. */
-int hw_session_place_marker(HwSession *session, double cell, double row, const char *bib);
+/* Acts on markers. Each is one step of undo, unless it continues the one before. `category` (NULL: none) is
+ * needed only where a bib is worn in two. `cell` must lie on a readable column: else −1 or false, and nothing
+ * changes. */
+int hw_session_place_marker(HwSession *session, double cell, double row, const char *bib,
+                            const char *category);
 bool hw_session_move_marker(HwSession *session, int index, double cell, double row, guint merge);
-void hw_session_rename_marker(HwSession *session, int index, const char *bib);
+void hw_session_rename_marker(HwSession *session, int index, const char *bib, const char *category);
 void hw_session_delete_marker(HwSession *session, int index);
 /* A merge key of its own for one drag. */
 guint hw_session_new_merge_key(HwSession *session);
@@ -73,7 +83,10 @@ void hw_session_mark_saved(HwSession *session, guint64 serial, const char *path,
 
 /* Next (direction 1) or previous (−1) marker in time from the reading line; −1 where there is none. */
 int hw_session_next_marker(HwSession *session, int direction, bool unnamed_only);
+/* The front marker of a bib in the passage that is judged, else any of that bib, or −1. */
 int hw_session_find_bib(HwSession *session, const char *bib);
+/* The front marker of a rider in the passage that is judged but `index`, or −1. */
+int hw_session_find_rider(HwSession *session, const char *bib, const char *category, int index);
 
 int hw_session_get_selection(HwSession *session);
 void hw_session_set_selection(HwSession *session, int index);

@@ -98,11 +98,51 @@ hw_session_derive(HwSession *session)
     input.race = document->race;
     input.rules = document->rules;
     input.calibration = document->calibration;
+    input.passage = document->request->passage;
     input.n_unchecked_blocks = document->n_unchecked_blocks;
     if (hw_markers_check_places(input.markers, document->strip, &error))
         session->list = hw_finish_list_new(&input, &error);
     if (!session->list)
         session->list_sentence = g_strdup(error->message);
+}
+
+GPtrArray *
+hw_session_dup_passages(HwSession *session)
+{
+    GPtrArray *names = g_ptr_array_new_with_free_func(g_free);
+
+    for (int i = 0; i < (int)hw_session_get_n_markers(session); i++) {
+        const char *name = hw_session_get_marker(session, i)->passage;
+
+        if (*name && !g_ptr_array_find_with_equal_func(names, name, g_str_equal, NULL))
+            g_ptr_array_add(names, g_strdup(name));
+    }
+    return names;
+}
+
+void
+hw_session_set_passage(HwSession *session, const char *passage)
+{
+    HwDocument *document = session->document;
+
+    if (!document || g_strcmp0(document->request->passage, passage) == 0)
+        return;
+    g_free(document->request->passage);
+    document->request->passage = g_strdup(passage);
+    hw_session_derive(session);
+    hw_session_emit(session, HW_SESSION_LIST);
+}
+
+const char *
+hw_session_get_passage(HwSession *session)
+{
+    const HwDocument *document = session->document;
+
+    if (document->request->passage)
+        return document->request->passage;
+    if (session->list && session->list->passage)
+        return session->list->passage;
+    return document->race && document->race->has_passage ? document->race->passage_name : "";
 }
 
 const HwFinishList *
@@ -214,17 +254,6 @@ dup_free_placeholder(const HwMarkers *markers)
     }
 }
 
-/* The passage new markers belong to: the race's, else the one the list was made of. */
-static const char *
-current_passage(HwSession *session)
-{
-    if (session->list && session->list->passage)
-        return session->list->passage;
-    if (session->document->race && session->document->race->has_passage)
-        return session->document->race->passage_name;
-    return "";
-}
-
 static bool
 is_readable(HwSession *session, double cell, double *column)
 {
@@ -234,7 +263,7 @@ is_readable(HwSession *session, double cell, double *column)
 }
 
 int
-hw_session_place_marker(HwSession *session, double cell, double row, const char *bib)
+hw_session_place_marker(HwSession *session, double cell, double row, const char *bib, const char *category)
 {
     g_autofree char *placeholder = NULL;
     HwMarkers *markers;
@@ -249,7 +278,9 @@ hw_session_place_marker(HwSession *session, double cell, double row, const char 
         bib = placeholder = dup_free_placeholder(markers);
     marker = hw_marker_new(bib, column, row);
     g_free(marker->passage);
-    marker->passage = g_strdup(current_passage(session));
+    marker->passage = g_strdup(hw_session_get_passage(session));
+    g_free(marker->category);
+    marker->category = g_strdup(category ? category : "");
     g_free(marker->camera);
     marker->camera = g_strdup(hw_recording_get_camera(session->document->recording));
     set_state(session, marker);
@@ -282,7 +313,7 @@ hw_session_move_marker(HwSession *session, int index, double cell, double row, g
 }
 
 void
-hw_session_rename_marker(HwSession *session, int index, const char *bib)
+hw_session_rename_marker(HwSession *session, int index, const char *bib, const char *category)
 {
     const HwMarker *old = hw_session_get_marker(session, index);
     g_autofree char *placeholder = NULL;
@@ -293,12 +324,14 @@ hw_session_rename_marker(HwSession *session, int index, const char *bib)
         return;
     if (!bib || !*bib || strcmp(bib, "?") == 0)
         bib = placeholder = dup_free_placeholder(hw_session_get_markers(session));
-    if (strcmp(old->bib, bib) == 0)
+    if (strcmp(old->bib, bib) == 0 && strcmp(old->category, category ? category : "") == 0)
         return;
     markers = hw_markers_copy(hw_session_get_markers(session));
     marker = g_ptr_array_index(markers->markers, (guint)index);
     g_free(marker->bib);
     marker->bib = g_strdup(bib);
+    g_free(marker->category);
+    marker->category = g_strdup(category ? category : "");
     push(session, markers, index, _("Name marker"), 0);
 }
 
@@ -427,11 +460,39 @@ hw_session_next_marker(HwSession *session, int direction, bool unnamed_only)
     return found;
 }
 
+static bool
+is_judged(HwSession *session, const HwMarker *marker)
+{
+    return marker->edge == HW_EDGE_FRONT && strcmp(marker->passage, hw_session_get_passage(session)) == 0;
+}
+
 int
 hw_session_find_bib(HwSession *session, const char *bib)
 {
-    for (int i = 0; i < (int)hw_session_get_n_markers(session); i++)
-        if (strcmp(hw_session_get_marker(session, i)->bib, bib) == 0)
+    int found = -1;
+
+    for (int i = 0; i < (int)hw_session_get_n_markers(session); i++) {
+        const HwMarker *marker = hw_session_get_marker(session, i);
+
+        if (strcmp(marker->bib, bib) != 0)
+            continue;
+        if (is_judged(session, marker))
             return i;
+        if (found < 0)
+            found = i;
+    }
+    return found;
+}
+
+int
+hw_session_find_rider(HwSession *session, const char *bib, const char *category, int index)
+{
+    for (int i = 0; i < (int)hw_session_get_n_markers(session); i++) {
+        const HwMarker *marker = hw_session_get_marker(session, i);
+
+        if (i != index && is_judged(session, marker) && strcmp(marker->bib, bib) == 0 &&
+            (!category || !*marker->category || strcmp(marker->category, category) == 0))
+            return i;
+    }
     return -1;
 }

@@ -336,6 +336,15 @@ rules_cb(GSimpleAction *action, GVariant *value, gpointer data)
 }
 
 static void
+passage_cb(GSimpleAction *action, GVariant *value, gpointer data)
+{
+    const char *name = g_variant_get_string(value, NULL);
+
+    hw_session_set_passage(HW_WINDOW(data)->session, *name ? name : NULL);
+    g_simple_action_set_state(action, value);
+}
+
+static void
 mirrored_cb(GSimpleAction *action, GVariant *value, gpointer data)
 {
     hw_session_set_mirrored(HW_WINDOW(data)->session, g_variant_get_boolean(value));
@@ -358,6 +367,7 @@ hw_window_add_actions(HwWindow *window)
 {
     const GActionEntry stateful[] = {
         { .name = "rules", .parameter_type = "s", .state = "''", .change_state = rules_cb },
+        { .name = "passage", .parameter_type = "s", .state = "''", .change_state = passage_cb },
         { .name = "mirrored", .state = "false", .change_state = mirrored_cb },
         { .name = "panels", .state = "true", .change_state = panels_cb },
     };
@@ -407,6 +417,10 @@ hw_window_update_actions(HwWindow *window)
     }
     action = g_action_map_lookup_action(G_ACTION_MAP(window), "rules");
     g_simple_action_set_state(G_SIMPLE_ACTION(action), g_variant_new_string(rules));
+    g_simple_action_set_enabled(G_SIMPLE_ACTION(action), document != NULL);
+    action = g_action_map_lookup_action(G_ACTION_MAP(window), "passage");
+    g_simple_action_set_state(G_SIMPLE_ACTION(action),
+                              g_variant_new_string(document ? hw_session_get_passage(window->session) : ""));
     g_simple_action_set_enabled(G_SIMPLE_ACTION(action), document != NULL);
     action = g_action_map_lookup_action(G_ACTION_MAP(window), "mirrored");
     g_simple_action_set_state(G_SIMPLE_ACTION(action),

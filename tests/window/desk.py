@@ -152,7 +152,8 @@ class Desk:
         if not listing:
             return []
         try:
-            return [listing.get_child_at_index(i).get_name() for i in range(listing.get_child_count())]
+            children = [listing.get_child_at_index(i) for i in range(listing.get_child_count())]
+            return [child.get_name() for child in children if child.get_role() == Atspi.Role.LIST_ITEM]
         except (GLib.Error, AttributeError):
             return []
 

@@ -131,7 +131,7 @@ a_new_act_drops_what_could_be_redone(void)
 
     hw_session_delete_marker(session, 3);
     hw_session_undo(session);
-    hw_session_rename_marker(session, 0, "501");
+    hw_session_rename_marker(session, 0, "501", NULL);
     g_assert_null(hw_session_get_redo_act(session));
     g_assert_false(hw_session_redo(session));
 }
@@ -162,7 +162,7 @@ enter_names_the_marker_under_the_line_and_no_other(void)
 
     delete_all(session);
     hw_session_set_reading_cell(session, 1000.0, true);
-    placed = hw_session_place_marker(session, 1000.0, 200.0, NULL);
+    placed = hw_session_place_marker(session, 1000.0, 200.0, NULL, NULL);
     naming = hw_naming_make(session, "1", 6.0);
     g_assert_cmpint(naming->state, ==, HW_NAMING_READY);
     g_assert_cmpint(naming->marker, ==, placed);
@@ -207,7 +207,7 @@ a_second_marker_close_by_is_never_placed_silently(void)
 
     delete_all(session);
     hw_session_zoom(session, 500.0, 1000.0);
-    hw_session_place_marker(session, 1000.0, 200.0, "1");
+    hw_session_place_marker(session, 1000.0, 200.0, "1", NULL);
     hw_session_set_reading_cell(session, 1003.0, true);
     naming = hw_naming_make(session, "2", 6.0);
     g_assert_cmpint(naming->marker, ==, -1);
@@ -237,7 +237,7 @@ a_number_used_twice_leaves_the_list_and_both_unnamed(void)
     const HwFinishList *list;
     guint n_rows = 0;
 
-    hw_session_rename_marker(session, 5, hw_session_get_marker(session, 0)->bib);
+    hw_session_rename_marker(session, 5, hw_session_get_marker(session, 0)->bib, NULL);
     list = hw_session_get_list(session, &sentence);
     g_assert_null(sentence);
     g_assert_nonnull(list);
@@ -261,7 +261,7 @@ a_marker_read_from_afar_is_rough_and_says_how_sure(void)
 
     delete_all(session);
     g_assert_cmpfloat(scale, >, 1.0);
-    marker = hw_session_get_marker(session, hw_session_place_marker(session, 1000.0, 200.0, "1"));
+    marker = hw_session_get_marker(session, hw_session_place_marker(session, 1000.0, 200.0, "1", NULL));
     g_assert_cmpint(marker->state, ==, HW_MARKER_ROUGH);
     /* GUM 4.3.7: half-width of half a pixel's columns at 0.5 ms each, rectangular. */
     g_assert_cmpfloat_with_epsilon(marker->u_lead_ns, scale * 500000.0 / sqrt(12.0), 1.0);

@@ -155,6 +155,62 @@ def a_doubtful_number_is_asked_about_and_taken_with_the_second_enter():
             wait_for("the conflict", lambda: desk.says("Number 9 stands at 2 markers"))
 
 
+def a_number_worn_in_two_categories_must_say_which():
+    with Folder() as folder:
+        path = write_recording(folder, "made")
+        with open(path + ".startlist.csv", "w") as out:
+            out.write("bib,name,category\n4,Ada Test,Women\n4,Ben Test,Veterans\n")
+        with Desk(path) as desk:
+            desk.focus_picture()
+            desk.keys("Home", "4", "Return", "Return")
+            wait_for("the refusal", lambda: desk.says("Number 4 is worn in several categories"))
+            check(desk.description().endswith(", 0 markers"), "nothing is placed for either")
+            desk.keys("space", "w", "Return")
+            wait_markers(desk, 1)
+            wait_for("the rider", lambda: any("number 4, Ada Test" in row for row in desk.rows()))
+            check(not any(re.match(r"\d", row) and "Ben Test" in row for row in desk.rows()), "the other has no place")
+            desk.act("save-markers")
+            saved = path + ".markers.csv"
+            wait_for("the file", lambda: os.path.exists(saved))
+            check_equal(markers_on_disk(saved)[0]["category"], "Women", "the category kept")
+
+
+def a_passage_is_chosen_where_markers_belong_to_several():
+    with Folder() as folder:
+        path = write_recording(folder, "made")
+        with open(path + ".markers.csv", "w") as out:
+            out.write("bib,column,row,edge,passage\n1,100,50,front,lap 1\n2,120,50,front,lap 1\n2,700,50,front,lap 2\n")
+        with Desk(path) as desk:
+            wait_for("the sentence", lambda: desk.says("The list cannot be made: see below why."))
+            desk.act("passage", "lap 1")
+            wait_for("lap 1", lambda: [row[:11] for row in desk.rows()] == ["1, number 1", "2, number 2"])
+            desk.act("passage", "lap 2")
+            wait_for("lap 2", lambda: [row[:11] for row in desk.rows()] == ["1, number 2"])
+            # A new marker belongs to the passage that is judged.
+            desk.focus_picture()
+            desk.act("goto-time", "16:02:11.300")
+            wait_for("the line", lambda: line_time(desk).startswith("16:02:11.300"))
+            desk.keys("1", "Return")
+            wait_markers(desk, 4)
+            desk.act("save-markers")
+            wait_for("the file", lambda: len(markers_on_disk(path + ".markers.csv")) == 4)
+            check_equal(markers_on_disk(path + ".markers.csv")[3]["passage"], "lap 2", "its passage")
+
+
+def the_picture_is_exported():
+    with Folder() as folder, Desk(SPRINT) as desk:
+        out = os.path.join(folder, "finish.png")
+        desk.act("export-picture", out)
+        wait_for("the file", lambda: os.path.exists(out))
+        with open(out, "rb") as png:
+            head = png.read(24)
+        check_equal(head[:8], b"\x89PNG\r\n\x1a\n", "a PNG")
+        # One pixel a column: wider than the columns between the first and the last rider.
+        with open(SPRINT + ".truth.csv", newline="") as lines:
+            columns = [float(row["front_column"]) for row in csv.DictReader(lines)]
+        check(int.from_bytes(head[16:20], "big") > max(columns) - min(columns), "nothing is cut off")
+
+
 def a_number_names_the_marker_in_view_and_never_one_that_is_not():
     with Folder() as folder, desk_with_picture(folder) as desk:
         desk.focus_picture()
@@ -347,6 +403,9 @@ run([
     a_marker_is_placed_named_moved_and_deleted_by_keys_alone,
     every_act_on_markers_can_be_undone_and_done_again,
     a_doubtful_number_is_asked_about_and_taken_with_the_second_enter,
+    a_number_worn_in_two_categories_must_say_which,
+    a_passage_is_chosen_where_markers_belong_to_several,
+    the_picture_is_exported,
     a_number_names_the_marker_in_view_and_never_one_that_is_not,
     a_marker_placed_in_a_shrunken_view_is_to_be_read_again,
     saving_asks_before_it_replaces_markers_that_were_never_read,
