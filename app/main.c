@@ -14,7 +14,6 @@ main(int argc, char **argv)
     bindtextdomain(GETTEXT_PACKAGE, HALFWHEEL_LOCALES);
     bind_textdomain_codeset(GETTEXT_PACKAGE, "UTF-8");
     textdomain(GETTEXT_PACKAGE);
-    g_set_prgname("org.halfwheel.Halfwheel");
     application = hw_application_new(HALFWHEEL_SAMPLES_PATH);
     return g_application_run(G_APPLICATION(application), argc, argv);
 }

@@ -28,6 +28,16 @@ told_apart(HwSeparated separated)
     }
 }
 
+/* ", 6.8 ± 0.4 cm", from a metre on ", 13.9 ± 2.7 m". */
+static char *
+dup_distance(double metres, double u)
+{
+    if (metres >= 1.0)
+        return g_strdup_printf(_(", %.*f ± %.*f m"), decimals_for(u), metres, decimals_for(u), u);
+    return g_strdup_printf(_(", %.*f ± %.*f cm"), decimals_for(u * 100.0), metres * 100.0,
+                           decimals_for(u * 100.0), u * 100.0);
+}
+
 char *
 hw_pair_words_dup(const HwFinishRow *ahead, const HwFinishRow *row)
 {
@@ -38,12 +48,8 @@ hw_pair_words_dup(const HwFinishRow *ahead, const HwFinishRow *row)
 
     if (!row->has_prev || !ahead)
         return NULL;
-    if (!isnan(row->prev.distance_m) && !isnan(row->prev.u_distance_m)) {
-        double u_cm = 200.0 * row->prev.u_distance_m;
-
-        distance = g_strdup_printf(_(", %.*f ± %.*f cm"), decimals_for(u_cm), row->prev.distance_m * 100.0,
-                                   decimals_for(u_cm), u_cm);
-    }
+    if (!isnan(row->prev.distance_m) && !isnan(row->prev.u_distance_m))
+        distance = dup_distance(row->prev.distance_m, 2.0 * row->prev.u_distance_m);
     return g_strdup_printf(_("%s ahead of %s by %.*f ± %.*f ms%s. %s"), ahead->bib, row->bib, places, gap_ms,
                            places, u_ms, distance ? distance : "", told_apart(row->prev.separated));
 }

@@ -60,10 +60,30 @@ set_sentence_class(HwTray *tray, const char *class)
         gtk_widget_add_css_class(GTK_WIDGET(tray->sentence), class);
 }
 
+/* The rider whose marker stands at the line, or NULL; *marker and *n_within as found. */
+static const HwRider *
+find_rider(HwTray *tray, const HwMarker **marker, int *n_within)
+{
+    const HwDocument *document = hw_session_get_document(tray->session);
+    bool ambiguous;
+
+    *n_within = 0;
+    *marker = document ? hw_session_get_marker(tray->session,
+                                               hw_naming_find_marker(tray->session, reach_px(tray), n_within))
+                       : NULL;
+    if (!*marker || !document->start_list)
+        return NULL;
+    return hw_start_list_find(document->start_list, (*marker)->bib,
+                              *(*marker)->category ? (*marker)->category : NULL, &ambiguous);
+}
+
 static void
 show_line(HwTray *tray)
 {
     double cell = hw_session_get_reading_cell(tray->session);
+    const HwMarker *marker;
+    const HwRider *rider;
+    int n_within;
     g_autofree char *time = NULL;
     g_autofree char *elapsed = NULL;
     g_autofree char *column = NULL;
@@ -74,8 +94,10 @@ show_line(HwTray *tray)
         set_text(tray->place, "");
         return;
     }
+    /* Where categories start apart, the elapsed time is that of the rider at the line. */
+    rider = find_rider(tray, &marker, &n_within);
     time = hw_words_dup_time_of_day(tray->session, cell);
-    elapsed = hw_words_dup_elapsed(tray->session, cell, NULL);
+    elapsed = hw_words_dup_elapsed(tray->session, cell, rider ? rider->category : NULL);
     column = hw_words_dup_column(tray->session, cell);
     if (elapsed)
         place = g_strdup_printf(_("elapsed %s · %s"), elapsed, column);
@@ -89,20 +111,12 @@ show_line(HwTray *tray)
 static void
 show_marker(HwTray *tray)
 {
-    const HwDocument *document = hw_session_get_document(tray->session);
-    const HwMarker *marker = NULL;
-    const HwRider *rider = NULL;
+    const HwMarker *marker;
+    int n_within;
+    const HwRider *rider = find_rider(tray, &marker, &n_within);
     g_autofree char *name = NULL;
     g_autofree char *who = NULL;
-    bool ambiguous;
-    int n_within = 0;
 
-    if (document)
-        marker = hw_session_get_marker(tray->session,
-                                       hw_naming_find_marker(tray->session, reach_px(tray), &n_within));
-    if (marker && document->start_list)
-        rider = hw_start_list_find(document->start_list, marker->bib,
-                                   marker->category[0] ? marker->category : NULL, &ambiguous);
     if (marker) {
         g_autofree char *known = rider ? hw_words_dup_rider(rider) : g_strdup("");
 
