@@ -52,16 +52,21 @@ reason_from(GError *error)
     return reason;
 }
 
-/* How many columns even stamps imply; 0 where they cannot tell. */
+/* How many columns the stamps imply of a block whose picture does not tell: from its first stamp to its last,
+ * or, stamped by rate, to where the next block (NULL: none) starts. 0 where they cannot tell. */
 static int64_t
-count_by_stamps(const HwBlock *about, int64_t rate_nhz)
+count_by_stamps(const HwBlock *about, const HwBlock *next, int64_t rate_nhz)
 {
+    bool even = about->stamps == HW_STAMPS_EVEN;
+    bool reaches = about->stamps == HW_STAMPS_RATE && next != NULL && next->stamps != HW_STAMPS_TIMES;
+    if (!even && !reaches)
+        return 0;
+    int64_t end_ns = even ? about->last_ns : next->first_ns;
     int64_t n;
-    if (about->stamps != HW_STAMPS_EVEN || about->last_ns <= about->first_ns)
+    if (end_ns <= about->first_ns ||
+        !hw_muldiv_half_even(end_ns - about->first_ns, rate_nhz, HW_NS_PER_S * HW_NS_PER_S, &n))
         return 0;
-    if (!hw_muldiv_half_even(about->last_ns - about->first_ns, rate_nhz, INT64_C(1000000000000000000), &n))
-        return 0;
-    return n < HW_MAX_COLUMNS ? n + 1 : 0;
+    return n < HW_MAX_COLUMNS ? n + (even ? 1 : 0) : 0;
 }
 
 /* Opens a block's file: its cache key, and its head where that is wanted. */
@@ -136,6 +141,8 @@ static void
 settle_block(HwStripTable *table, guint index, int64_t *n_rows, bool *any_head)
 {
     const HwBlock *about = hw_recording_get_block(table->recording, index);
+    const HwBlock *next =
+        index + 1 < table->n_blocks ? hw_recording_get_block(table->recording, index + 1) : NULL;
     HwStripBlock *block = &table->blocks[index];
     bool want_head = about->columns == 0 || !*any_head;
     HwImageInfo head = { HW_IMAGE_OTHER, 0, 0 };
@@ -150,7 +157,7 @@ settle_block(HwStripTable *table, guint index, int64_t *n_rows, bool *any_head)
     if (block->n_cols == 0 && has_head)
         block->n_cols = head.width;
     if (block->n_cols == 0)
-        block->n_cols = count_by_stamps(about, hw_recording_get_scan(table->recording)->rate_nhz);
+        block->n_cols = count_by_stamps(about, next, hw_recording_get_scan(table->recording)->rate_nhz);
     if (!has_head)
         return;
     if (*n_rows == 0)

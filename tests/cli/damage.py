@@ -166,6 +166,7 @@ def a_missing_block_without_columns_reaches_to_the_next(folder):
     equal(seen.status, 3, seen.err)
     equal([(void["after_column"], void["duration_ns"]) for void in seen.json["voids"]],
           [(128, 64 * PERIOD_NS)], "void")
+    equal(seen.json["columns"], 256, "columns, so that those behind it keep their numbers")
     equal(seen.json["duration_ns"], 256 * PERIOD_NS, "nothing is closed up")
 
 
