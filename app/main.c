@@ -11,7 +11,10 @@ main(int argc, char **argv)
     g_autoptr(HwApplication) application = NULL;
 
     setlocale(LC_ALL, "");
-    bindtextdomain(GETTEXT_PACKAGE, HALFWHEEL_LOCALES);
+    /* Run from where it was built, it speaks as it was built. */
+    bindtextdomain(GETTEXT_PACKAGE, g_file_test(HALFWHEEL_BUILT_LOCALES, G_FILE_TEST_IS_DIR)
+                                        ? HALFWHEEL_BUILT_LOCALES
+                                        : HALFWHEEL_LOCALES);
     bind_textdomain_codeset(GETTEXT_PACKAGE, "UTF-8");
     textdomain(GETTEXT_PACKAGE);
     application = hw_application_new(HALFWHEEL_SAMPLES_PATH);

@@ -5,6 +5,7 @@ import os
 import re
 import subprocess
 import sys
+import tempfile
 import xml.etree.ElementTree as tree
 
 sys.path.insert(0, os.path.dirname(__file__))
@@ -68,10 +69,25 @@ def every_bound_key_is_in_the_shortcuts_window():
     check_equal(missing, [], "keys bound but not listed")
 
 
+def every_text_has_its_french():
+    with open(os.path.join(ROOT, "app", "po", "POTFILES"), encoding="utf-8") as lines:
+        sources = [line.strip() for line in lines if line.strip() and not line.startswith("#")]
+    marked = [name for name in os.listdir(UI) if name.endswith(".c") and re.search(r"\b(?:_|N_|ngettext)\(\"", read(UI, name))]
+    check_equal(sorted("ui/" + name for name in marked), sorted(name for name in sources if name.endswith(".c")),
+                "sources with texts, and those listed in POTFILES")
+    with tempfile.TemporaryDirectory() as folder:
+        texts = os.path.join(folder, "all.pot")
+        subprocess.run(["xgettext", "--from-code=UTF-8", "-k_", "-kN_", "-kngettext:1,2", "-o", texts, *sources],
+                       cwd=ROOT, check=True, capture_output=True)
+        passes("msgcmp", os.path.join(ROOT, "app", "po", "fr.po"), texts)
+        passes("msgfmt", "-c", "-o", os.path.join(folder, "fr.mo"), os.path.join(ROOT, "app", "po", "fr.po"))
+
+
 run([
     the_desktop_file_is_valid,
     the_description_for_software_catalogues_is_valid,
     the_file_type_is_the_one_the_desktop_file_opens,
     every_key_in_the_shortcuts_window_is_bound,
     every_bound_key_is_in_the_shortcuts_window,
+    every_text_has_its_french,
 ])
