@@ -103,7 +103,6 @@ void hw_session_zoom_one_to_one(HwSession *session);
 void hw_session_zoom_fit(HwSession *session);
 /* Zoom in height, the row at y_px staying there. */
 void hw_session_zoom_rows(HwSession *session, double y_px, double factor);
-void hw_session_fit_rows(HwSession *session);
 /* By pixels, as dragged on screen. */
 void hw_session_pan_px(HwSession *session, double dx_px, double dy_px);
 /* By views, later above zero. */

@@ -190,13 +190,6 @@ hw_session_zoom_rows(HwSession *session, double y_px, double factor)
 }
 
 void
-hw_session_fit_rows(HwSession *session)
-{
-    session->fits_rows = true;
-    set_view(session, fitted(session, session->view));
-}
-
-void
 hw_session_pan_px(HwSession *session, double dx_px, double dy_px)
 {
     HwViewMap view = session->view;
