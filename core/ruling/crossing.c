@@ -37,11 +37,9 @@ only_passage(const HwMarkers *markers, GError **error)
         if (*marker->passage == '\0' || strcmp(marker->passage, found) == 0)
             continue;
         if (*found != '\0') {
-            g_set_error(
-                error, HW_RULING_ERROR, HW_RULING_ERROR_MARKERS,
-                "%s holds markers of the passages “%s” and “%s”; say which one is ranked (--passage, or "
-                "“passage” in the race file).",
-                markers->path, found, marker->passage);
+            g_set_error(error, HW_RULING_ERROR, HW_RULING_ERROR_MARKERS,
+                        "%s holds markers of the passages “%s” and “%s”; name the one that is meant.",
+                        markers->path, found, marker->passage);
             return NULL;
         }
         found = marker->passage;
