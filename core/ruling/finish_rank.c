@@ -292,10 +292,14 @@ apply_groups(const Category *category, const Grouping *grouping)
             open = false;
         } else if (grouping->states[i] == HW_GROUP_REAR_NEEDED) {
             const HwFinishRow *ahead = row_at(grouping->rows, (guint)grouping->needs[i]);
-            hw_finish_list_say(category->list,
-                               "Rear wheel needed between bibs %s and %s: mark where the rear tyre of bib %s "
-                               "leaves the line; until then group and time are open from bib %s on.",
-                               row_at(grouping->rows, i - 1)->bib, row->bib, ahead->bib, row->bib);
+            hw_finish_list_say(
+                category->list,
+                "Rear wheel needed between bibs %s and %s: mark where the rear tyre of bib %s leaves the "
+                "line%s; until then "
+                "group and time are open from bib %s on.",
+                row_at(grouping->rows, i - 1)->bib, row->bib, ahead->bib,
+                isnan(ahead->speed_mps) ? " (its speed was not measured; it may have been on foot)" : "",
+                row->bib);
             number++; /* there may be one group more: numbers behind are not reused */
             open = true;
         }

@@ -220,6 +220,11 @@ where_a_rear_wheel_is_needed_nothing_is_guessed(void)
     g_assert_false(fixture_row(open, "2", NULL)->has_official);
     g_assert_true(fixture_row(open, "3", NULL)->has_official);
     g_assert_true(fixture_says(open, "Rear wheel needed between bibs 1 and 2", NULL));
+    g_assert_false(fixture_says(open, "Rear wheel needed", "on foot", NULL));
+    given.markers =
+        "1,1000,,front\n2,2900,18,front\n3,4000,18,front"; /* at 0.5 m/s it clears the line in 3.7 s */
+    g_autoptr(HwFinishList) on_foot = fixture_list(fixture, &given);
+    g_assert_true(fixture_says(on_foot, "Rear wheel needed between bibs 1 and 2", "on foot", NULL));
     given.markers = "1,1000,18,front\n1,1095,,rear\n2,2050,18,front\n3,4000,18,front";
     g_autoptr(HwFinishList) decided = fixture_list(fixture, &given);
     g_assert_cmpint(fixture_row(decided, "2", NULL)->group, ==, 1);
