@@ -1,6 +1,7 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 #include "core/measure/calibration.h"
 
+#include "core/base/input.h"
 #include "core/base/json.h"
 #include "core/base/limits.h"
 #include "core/base/number.h"
@@ -70,22 +71,30 @@ read_fields(const json_t *root, const char *path, HwCalibration *calibration, GE
 }
 
 HwCalibration *
-hw_calibration_read(const char *path, GError **error)
+hw_calibration_parse(const char *text, gsize size, const char *label, GError **error)
 {
-    g_autoptr(json_t) root = hw_json_read_file(path, HW_MAX_MANIFEST_BYTES, error);
+    g_autoptr(json_t) root = hw_json_parse(text, size, label, error);
     if (root == NULL)
         return NULL;
     int64_t version = 0;
     if (!json_is_object(root) || json_object_get(root, "halfwheel_calibration") == NULL) {
         g_set_error(error, HW_MEASURE_ERROR, HW_MEASURE_ERROR_CALIBRATION,
-                    "%s is no calibration: “halfwheel_calibration” is missing; name the right file.", path);
+                    "%s is no calibration: “halfwheel_calibration” is missing; name the right file.", label);
         return NULL;
     }
     if (!hw_json_get_int64(root, "halfwheel_calibration", HW_JSON_REQUIRED, CALIBRATION_VERSION,
-                           CALIBRATION_VERSION, path, &version, error))
+                           CALIBRATION_VERSION, label, &version, error))
         return NULL;
     g_autoptr(HwCalibration) calibration = g_new0(HwCalibration, 1);
-    return read_fields(root, path, calibration, error) ? g_steal_pointer(&calibration) : NULL;
+    return read_fields(root, label, calibration, error) ? g_steal_pointer(&calibration) : NULL;
+}
+
+HwCalibration *
+hw_calibration_read(const char *path, GError **error)
+{
+    size_t size;
+    g_autofree char *text = hw_input_read(path, HW_MAX_MANIFEST_BYTES, &size, error);
+    return text != NULL ? hw_calibration_parse(text, size, path, error) : NULL;
 }
 
 bool

@@ -24,6 +24,7 @@ typedef struct {
 
 /* Reads a calibration file (owned by the caller). */
 HwCalibration *hw_calibration_read(const char *path, GError **error);
+HwCalibration *hw_calibration_parse(const char *text, gsize size, const char *label, GError **error);
 void hw_calibration_free(HwCalibration *calibration);
 
 /* True where it holds for the recording; else HW_MEASURE_ERROR_OTHER_SETUP names what differs, and by how
