@@ -43,6 +43,8 @@ extern const HwVerb hw_verb_cut;
 extern const HwVerb hw_verb_rules;
 extern const HwVerb hw_verb_rank;
 extern const HwVerb hw_verb_picture;
+extern const HwVerb hw_verb_make_case;
+extern const HwVerb hw_verb_export;
 
 /* A titled table of options on a verb's help page. */
 typedef struct {

@@ -11,7 +11,8 @@
 #include <unistd.h>
 
 static const HwVerb *const verbs[] = {
-    &hw_verb_inspect, &hw_verb_cut, &hw_verb_rules, &hw_verb_rank, &hw_verb_picture,
+    &hw_verb_inspect, &hw_verb_cut,       &hw_verb_rules,  &hw_verb_rank,
+    &hw_verb_picture, &hw_verb_make_case, &hw_verb_export,
 };
 
 static const char more[] =

@@ -1,6 +1,7 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 /* What a case keeps of files is kept exactly, and what is not as it was is refused or named. */
 #include "core/case/case_error.h"
+#include "core/case/case_files.h"
 #include "core/case/case_finish.h"
 #include "core/case/document.h"
 #include "core/case/marker_fact.h"
@@ -251,6 +252,30 @@ settings_that_are_none_are_refused(void)
     g_assert_nonnull(strstr(nowhere, "recording"));
 }
 
+/* As where a file is exchanged between its two readings: list and input do not go together. */
+static void
+a_case_that_does_not_give_its_list_is_not_made(void)
+{
+    g_autofree char *folder = g_dir_make_tmp("hw-case-XXXXXX", NULL);
+    g_autofree char *path = g_build_filename(folder, "finish" HW_CASE_SUFFIX, NULL);
+    g_autoptr(HwStrip) strip = open_duel();
+    g_autoptr(HwMarkers) markers = hw_markers_new();
+    g_ptr_array_add(markers->markers, hw_marker_new("7", 310.1, NAN));
+    HwFinishInput input = { .strip = strip, .markers = markers };
+    g_autoptr(GError) error = NULL;
+    g_autoptr(HwFinishList) list = hw_finish_list_derive(&input, NULL, &error);
+    g_assert_no_error(error);
+    strip = input.strip;
+    HwCaseFiles files = { .input = &input, .list = list };
+    g_assert_true(hw_case_from_files(path, &files, false, NULL, NULL));
+    g_unlink(path);
+
+    ((HwMarker *)g_ptr_array_index(markers->markers, 0))->column += 1.0;
+    g_assert_false(hw_case_from_files(path, &files, false, NULL, &error));
+    g_assert_error(error, HW_CASE_ERROR, HW_CASE_ERROR_IO);
+    g_assert_cmpint(g_rmdir(folder), ==, 0); /* nothing is left in it */
+}
+
 static void
 unchanged_files_are_not_named(void)
 {
@@ -284,6 +309,8 @@ main(int argc, char **argv)
     g_test_add_func("/case_finish/a_marker_whose_place_is_not_there_is_refused",
                     a_marker_whose_place_is_not_there_is_refused);
     g_test_add_func("/case_finish/settings_that_are_none_are_refused", settings_that_are_none_are_refused);
+    g_test_add_func("/case_finish/a_case_that_does_not_give_its_list_is_not_made",
+                    a_case_that_does_not_give_its_list_is_not_made);
     g_test_add_func("/case_finish/unchanged_files_are_not_named", unchanged_files_are_not_named);
     return g_test_run();
 }
