@@ -354,7 +354,7 @@ def a_race_file_of_another_kind_is_refused(folder):
 def several_passages_and_none_named_are_refused(folder):
     place = recording(folder)
     markers(folder, [("7", 10.5, "lap 1"), ("7", 100.5, "finish")], header=("bib", "column", "passage"))
-    refused_list(folder, place, "rec.markers.csv", "lap 1", "finish", "--passage")
+    refused_list(folder, place, "rec.markers.csv", "lap 1", "finish", "name the one")
     equal(rank(place, "--passage", "lap 1")["list"][0]["time_ns"], instant_ns(10.5), "the one named")
 
 
