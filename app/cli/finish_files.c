@@ -152,9 +152,7 @@ read_start(HwFinishFiles *files, const HwFinishOptions *options, GError **error)
         return true;
     }
     if (fault != NULL) {
-        g_autofree char *shown = hw_cli_dup_line(options->start);
-        g_set_error(error, HW_CLI_ERROR, HW_CLI_ERROR_CALL,
-                    "--start “%s”: %s; write it as 2027-06-13T14:50:00+02:00.", shown, fault->message);
+        g_set_error(error, HW_CLI_ERROR, HW_CLI_ERROR_CALL, "--start: %s.", fault->message);
     }
     return false;
 }

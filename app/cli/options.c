@@ -121,9 +121,7 @@ hw_scan_options_read(const HwScanOptions *options, const char *image, HwImageSca
     g_autoptr(GError) fault = NULL;
     if (!g_utf8_validate(options->epoch, -1, NULL) ||
         !hw_instant_parse(options->epoch, &read.epoch, &fault)) {
-        g_autofree char *shown = hw_cli_dup_line(options->epoch);
-        return call_error(error, "--epoch “%s”: %s; write it as 2027-06-13T16:02:11.5+02:00.", shown,
-                          fault != NULL ? fault->message : "is not UTF-8");
+        return call_error(error, "--epoch: %s.", fault != NULL ? fault->message : "the text is not UTF-8");
     }
     read.epoch_text = options->epoch;
     if (!read_stamp(options, &read, error) || !read_side("--later", options->later, &read.later, error) ||

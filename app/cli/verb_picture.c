@@ -30,7 +30,7 @@ static const char more[] =
     "  2  the call was wrong\n"
     "\n"
     "Example:\n"
-    "  halfwheel-cli picture samples/aldermoor-sprint --rules road-1s --pair 17,42 -o pair.png\n"
+    "  halfwheel-cli picture samples/aldermoor-sprint --rules road-1s --pair 2,33 -o pair.png\n"
     "\n"
     "The picture is evidence, not a ruling: the result is ruled by a licensed commissaire under the "
     "regulations in\n"
@@ -85,7 +85,7 @@ check_options(const HwPictureOptions *options, HwPictureFormat *format, char ***
         return true;
     g_auto(GStrv) bibs = g_strsplit(options->pair, ",", 3);
     if (g_strv_length(bibs) != 2 || *bibs[0] == '\0' || *bibs[1] == '\0' || strcmp(bibs[0], bibs[1]) == 0)
-        return wrong_call("--pair takes two different bibs parted by a comma, such as 17,42.", error);
+        return wrong_call("--pair takes two different bibs parted by a comma, such as 2,33.", error);
     *pair = g_steal_pointer(&bibs);
     return true;
 }

@@ -7,14 +7,6 @@
 #include <math.h>
 #include <string.h>
 
-/* As in markers files. */
-static const char *const edge_words[] = { "front", "rear", NULL };
-static const char *const state_words[] = { "read", "rough", NULL };
-static const char *const basis_words[] = {
-    "tyre", "inferred", "other_camera", "caller", "transponder", NULL
-};
-static const char *const direction_words[] = { "with", "against", NULL };
-
 static json_t *
 number_or_null(double value)
 {
@@ -29,10 +21,10 @@ set_texts(json_t *fact, const HwMarker *marker)
     json_object_set_new(fact, "passage", json_string(marker->passage));
     json_object_set_new(fact, "camera", json_string(marker->camera));
     json_object_set_new(fact, "reader", json_string(marker->reader));
-    json_object_set_new(fact, "edge", json_string(edge_words[marker->edge]));
-    json_object_set_new(fact, "state", json_string(state_words[marker->state]));
-    json_object_set_new(fact, "basis", json_string(basis_words[marker->basis]));
-    json_object_set_new(fact, "direction", json_string(direction_words[marker->direction]));
+    json_object_set_new(fact, "edge", json_string(hw_marker_edge_words[marker->edge]));
+    json_object_set_new(fact, "state", json_string(hw_marker_state_words[marker->state]));
+    json_object_set_new(fact, "basis", json_string(hw_marker_basis_words[marker->basis]));
+    json_object_set_new(fact, "direction", json_string(hw_marker_direction_words[marker->direction]));
     json_object_set_new(fact, "name_basis", json_string(marker->name_basis));
     json_object_set_new(fact, "note", json_string(marker->note));
 }
@@ -92,10 +84,11 @@ static bool
 read_words(const json_t *fact, const char *where, HwMarker *marker, GError **error)
 {
     int edge, state, basis, direction;
-    if (!hw_json_get_word(fact, "edge", HW_JSON_REQUIRED, edge_words, where, &edge, error) ||
-        !hw_json_get_word(fact, "state", HW_JSON_REQUIRED, state_words, where, &state, error) ||
-        !hw_json_get_word(fact, "basis", HW_JSON_REQUIRED, basis_words, where, &basis, error) ||
-        !hw_json_get_word(fact, "direction", HW_JSON_REQUIRED, direction_words, where, &direction, error))
+    if (!hw_json_get_word(fact, "edge", HW_JSON_REQUIRED, hw_marker_edge_words, where, &edge, error) ||
+        !hw_json_get_word(fact, "state", HW_JSON_REQUIRED, hw_marker_state_words, where, &state, error) ||
+        !hw_json_get_word(fact, "basis", HW_JSON_REQUIRED, hw_marker_basis_words, where, &basis, error) ||
+        !hw_json_get_word(fact, "direction", HW_JSON_REQUIRED, hw_marker_direction_words, where, &direction,
+                          error))
         return false;
     marker->edge = (HwEdge)edge;
     marker->state = (HwMarkerState)state;

@@ -133,6 +133,22 @@ hw_column_map_make(const HwCsvTable *table, const char *by_hand, HwColumnMap *ma
     return true;
 }
 
+/* "; not used: Colour, Seed", where there are such columns. */
+static void
+append_unused(GString *text, const HwColumnMap *map, const HwCsvTable *table)
+{
+    const char *before = "; not used: ";
+    for (guint column = 0; table->header[column] != NULL; column++) {
+        bool used = *table->header[column] == '\0';
+        for (int i = 0; i < HW_N_FIELDS; i++)
+            used |= map->column[i] == column;
+        if (!used) {
+            g_string_append_printf(text, "%s%s", before, table->header[column]);
+            before = ", ";
+        }
+    }
+}
+
 char *
 hw_column_map_dup_text(const HwColumnMap *map, const HwCsvTable *table)
 {
@@ -142,5 +158,6 @@ hw_column_map_dup_text(const HwColumnMap *map, const HwCsvTable *table)
             g_string_append_printf(text, "%s%s ← %s", text->len > 0 ? ", " : "", field_names[i],
                                    table->header[map->column[i]]);
     }
+    append_unused(text, map, table);
     return g_string_free(text, FALSE);
 }

@@ -35,5 +35,6 @@ typedef struct {
  * would mean one field (say which by hand). */
 bool hw_column_map_make(const HwCsvTable *table, const char *by_hand, HwColumnMap *map, GError **error);
 
-/* "bib ← Dossard, name ← Nom": what was understood, to be shown. Owned by the caller. */
+/* "bib ← Dossard, name ← Nom; not used: Couleur": what was understood and what was not, to be shown. Owned by
+ * the caller. */
 char *hw_column_map_dup_text(const HwColumnMap *map, const HwCsvTable *table);

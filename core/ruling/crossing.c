@@ -127,12 +127,13 @@ take_marker(HwCrossings *crossings, const HwFinishInput *input, const HwMarker *
     HwCrossing *crossing = find_crossing(crossings->crossings, marker, rider);
     const HwMarker **edge = marker->edge == HW_EDGE_FRONT ? &crossing->front : &crossing->rear;
     if (*edge != NULL) {
-        g_set_error(
-            error, HW_RULING_ERROR, HW_RULING_ERROR_MARKERS,
-            "%s: bib %s has two %s markers in passage “%s” (lines %u and %u); correct one bib, or name the "
-            "passages.",
-            input->markers->path, marker->bib, marker->edge == HW_EDGE_FRONT ? "front" : "rear",
-            crossings->passage, (*edge)->line, marker->line);
+        g_set_error(error, HW_RULING_ERROR, HW_RULING_ERROR_MARKERS,
+                    "%s: bib %s has two %s markers in %s%s%s (lines %u and %u); correct one of the bibs, or "
+                    "say of each "
+                    "marker which passage it is (a column “passage”).",
+                    input->markers->path, marker->bib, marker->edge == HW_EDGE_FRONT ? "front" : "rear",
+                    *crossings->passage != '\0' ? "passage “" : "one passage", crossings->passage,
+                    *crossings->passage != '\0' ? "”" : "", (*edge)->line, marker->line);
         return false;
     }
     *edge = marker;

@@ -2,6 +2,7 @@
 #include "core/ruling/finish_list.h"
 
 #include "core/base/duration.h"
+#include "core/base/limits.h"
 #include "core/ruling/finish_build.h"
 
 #include <math.h>
@@ -97,6 +98,39 @@ say_what_input_lacks(HwFinishList *list, const HwFinishInput *input)
                            input->race->neutralised->len == 1 ? " is" : "es are");
 }
 
+static bool
+crossed_before_start(const HwFinishRow *row)
+{
+    return row->crossed && row->start_source != HW_START_NONE && !row->has_elapsed;
+}
+
+static bool
+took_more_than_a_day(const HwFinishRow *row)
+{
+    return row->has_elapsed && row->time_ns >= HW_NS_PER_DAY;
+}
+
+/* One sentence for however many riders it is true of: "Bib 12 and 29 others …". */
+static void
+say_of_riders(HwFinishList *list, bool (*is_true)(const HwFinishRow *), const char *what)
+{
+    const HwFinishRow *first = NULL;
+    guint n = 0;
+    for (guint i = 0; i < list->rows->len; i++) {
+        const HwFinishRow *row = g_ptr_array_index(list->rows, i);
+        if (!is_true(row))
+            continue;
+        first = first != NULL ? first : row;
+        n++;
+    }
+    if (n == 0)
+        return;
+    g_autofree char *others = n == 1   ? g_strdup("")
+                              : n == 2 ? g_strdup(" and one other")
+                                       : g_strdup_printf(" and %u others", n - 1);
+    hw_finish_list_say(list, "Bib %s%s %s.", first->bib, others, what);
+}
+
 static void
 say_about_starts(HwFinishList *list)
 {
@@ -108,6 +142,9 @@ say_about_starts(HwFinishList *list)
         own +=
             row->crossed && (row->start_source == HW_START_SCHEDULED || row->start_source == HW_START_GATE);
     }
+    say_of_riders(list, crossed_before_start,
+                  "crossed before the start, so there is no time; check the start's day and offset");
+    say_of_riders(list, took_more_than_a_day, "took more than a day from the start; check the start's day");
     if (own > 0 && list->unrounded)
         hw_finish_list_say(
             list, "Riders have starts of their own: the order across the line is no ranking by time; name a "

@@ -110,13 +110,15 @@ append_table(GString *text, const HwFinishList *list)
     for (int i = 0; i < N_CELLS; i++)
         widths[i] = widths[i] > 0 ? MAX(widths[i], width_of(heads[i])) : 0;
     append_cells(text, heads, widths);
-    const char *category = NULL;
+    const char *category = "";
     for (guint r = 0; r < list->rows->len; r++) {
         const HwFinishRow *row = g_ptr_array_index(list->rows, r);
-        bool begins = category == NULL ? *row->category != '\0' : strcmp(category, row->category) != 0;
-        if (begins)
+        /* Who is not in the start list but has a place stands under the heading of those around. */
+        bool stays = !row->in_start_list && row->rank > 0;
+        if (!stays && strcmp(category, row->category) != 0) {
             g_string_append_printf(text, "\n%s\n", *row->category != '\0' ? row->category : "No category");
-        category = row->category;
+            category = row->category;
+        }
         append_cells(text, g_ptr_array_index(table, r), widths);
     }
 }
@@ -162,8 +164,8 @@ hw_finish_list_dup_text(const HwFinishList *list)
 {
     GString *text = g_string_new(NULL);
     if (list->rules_id != NULL)
-        g_string_append_printf(text, "%s (%s; %s)\n", list->rules_title, list->rules_article,
-                               list->rules_edition);
+        g_string_append_printf(text, "%s: %s (%s; %s)\n", list->rules_id, list->rules_title,
+                               list->rules_article, list->rules_edition);
     else
         g_string_append(text, "Measured order, not rounded: no rule set\n");
     if (*list->passage != '\0')

@@ -47,22 +47,14 @@ set_elapsed(HwFinishList *list, const HwFinishInput *input, const HwRider *rider
         return;
     row->time_ns = elapsed.elapsed_ns;
     row->has_elapsed = elapsed.elapsed_ns >= 0;
-    g_autofree char *start = hw_instant_dup_text(&elapsed.start, 3);
-    if (!row->has_elapsed)
-        hw_finish_list_say(
-            list,
-            "Bib %s crossed before its start (%s), so it has no time; check the start's day and "
-            "offset.",
-            row->bib, start);
-    else if (elapsed.elapsed_ns >= HW_NS_PER_DAY)
-        hw_finish_list_say(list, "Bib %s took more than a day from its start (%s); check the start's day.",
-                           row->bib, start);
-    if (row->gate_refused)
+    if (row->gate_refused) {
+        g_autofree char *start = hw_instant_dup_text(&elapsed.start, 3);
         hw_finish_list_say(
             list,
             "Bib %s: the gate's start time is not within 1 s before and 5 s after the scheduled "
             "one, so the scheduled one counts (%s).",
             row->bib, start);
+    }
 }
 
 /* The status of somebody who crossed, from what was given. */

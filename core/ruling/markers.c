@@ -38,12 +38,11 @@ static const char *const col_names[N_COLS] = {
     "passage", "camera", "reader", "state", "basis",   "direction", "name_basis", "note",        "recording"
 };
 
-static const char *const edge_words[] = { "front", "rear", NULL };
-static const char *const state_words[] = { "read", "rough", NULL };
-static const char *const basis_words[] = {
-    "tyre", "inferred", "other_camera", "caller", "transponder", NULL
-};
-static const char *const direction_words[] = { "with", "against", NULL };
+const char *const hw_marker_edge_words[] = { "front", "rear", NULL };
+const char *const hw_marker_state_words[] = { "read", "rough", NULL };
+const char *const hw_marker_basis_words[] = { "tyre",   "inferred",    "other_camera",
+                                              "caller", "transponder", NULL };
+const char *const hw_marker_direction_words[] = { "with", "against", NULL };
 
 HwMarker *
 hw_marker_new(const char *bib, double column, double row)
@@ -158,7 +157,7 @@ read_number(const Cells *cells, Col col, double min, double *value, GError **err
     if (*text == '\0')
         return true;
     if (!hw_number_parse_double(text, value))
-        return refuse_cell(cells, col, "write a number", error);
+        return refuse_cell(cells, col, "write a number, with a point before its decimals", error);
     return *value >= min || refuse_cell(cells, col, "it must not be below zero", error);
 }
 
@@ -183,10 +182,10 @@ static bool
 read_words(const Cells *cells, HwMarker *marker, GError **error)
 {
     int edge = HW_EDGE_FRONT, state = HW_MARKER_READ, basis = HW_BASIS_TYRE, direction = HW_DIRECTION_WITH;
-    if (!read_word(cells, COL_EDGE, edge_words, &edge, error) ||
-        !read_word(cells, COL_STATE, state_words, &state, error) ||
-        !read_word(cells, COL_BASIS, basis_words, &basis, error) ||
-        !read_word(cells, COL_DIRECTION, direction_words, &direction, error))
+    if (!read_word(cells, COL_EDGE, hw_marker_edge_words, &edge, error) ||
+        !read_word(cells, COL_STATE, hw_marker_state_words, &state, error) ||
+        !read_word(cells, COL_BASIS, hw_marker_basis_words, &basis, error) ||
+        !read_word(cells, COL_DIRECTION, hw_marker_direction_words, &direction, error))
         return false;
     marker->edge = (HwEdge)edge;
     marker->state = (HwMarkerState)state;
@@ -394,7 +393,7 @@ hw_markers_dup_csv(const HwMarkers *markers, HwStrip *strip)
             [COL_BIB] = marker->bib,
             [COL_COLUMN] = column,
             [COL_ROW] = row,
-            [COL_EDGE] = edge_words[marker->edge],
+            [COL_EDGE] = hw_marker_edge_words[marker->edge],
             [COL_TIME_NS] = time,
             [COL_U_LEAD_NS] = u_lead,
             [COL_SPEED_MPS] = speed,
@@ -403,9 +402,9 @@ hw_markers_dup_csv(const HwMarkers *markers, HwStrip *strip)
             [COL_PASSAGE] = marker->passage,
             [COL_CAMERA] = marker->camera,
             [COL_READER] = marker->reader,
-            [COL_STATE] = state_words[marker->state],
-            [COL_BASIS] = basis_words[marker->basis],
-            [COL_DIRECTION] = direction_words[marker->direction],
+            [COL_STATE] = hw_marker_state_words[marker->state],
+            [COL_BASIS] = hw_marker_basis_words[marker->basis],
+            [COL_DIRECTION] = hw_marker_direction_words[marker->direction],
             [COL_NAME_BASIS] = marker->name_basis,
             [COL_NOTE] = marker->note,
             [COL_RECORDING] = identity,

@@ -43,6 +43,12 @@ typedef struct {
     guint line; /* of the file; 0 where it has none */
 } HwMarker;
 
+/* As in files, NULL-ended, in the order of the enumerations. */
+extern const char *const hw_marker_edge_words[];
+extern const char *const hw_marker_state_words[];
+extern const char *const hw_marker_basis_words[];
+extern const char *const hw_marker_direction_words[];
+
 HwMarker *hw_marker_new(const char *bib, double column, double row);
 HwMarker *hw_marker_copy(const HwMarker *marker);
 void hw_marker_free(HwMarker *marker);

@@ -49,7 +49,7 @@ void hw_rules_free(HwRules *rules);
 /* The rule set in words a commissaire would recognise, a paragraph with line breaks. Owned by the caller. */
 char *hw_rules_dup_text(const HwRules *rules);
 
-/* One line: title, article, edition. Owned by the caller. */
+/* One line: id, title, article, edition. Owned by the caller. */
 char *hw_rules_dup_line(const HwRules *rules);
 
 G_DEFINE_AUTOPTR_CLEANUP_FUNC(HwRules, hw_rules_free)

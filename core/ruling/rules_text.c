@@ -9,7 +9,7 @@
 char *
 hw_rules_dup_line(const HwRules *rules)
 {
-    return g_strdup_printf("%s (%s; %s)", rules->title, rules->article, rules->edition);
+    return g_strdup_printf("%s: %s (%s; %s)", rules->id, rules->title, rules->article, rules->edition);
 }
 
 /* "1 s", "0.01 s", "30 days". */

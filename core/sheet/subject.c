@@ -349,10 +349,12 @@ write_foot(HwSubject *subject, guint n_shown)
     const HwPicture *picture = &subject->picture;
     HwRecording *recording = hw_strip_get_recording(subject->strip);
     g_autofree char *epoch = hw_instant_dup_text(hw_recording_get_epoch(recording), 3);
+    g_autofree char *name = g_path_get_basename(hw_recording_get_path(recording));
+    const char *title = hw_recording_get_title(recording);
     add(subject->foot,
         g_strdup_printf("%s%s%s · recording “%s”, camera %s, epoch %s, identity %s", subject->heading,
                         *subject->subheading != '\0' ? " · " : "", subject->subheading,
-                        hw_recording_get_title(recording), hw_recording_get_camera(recording), epoch,
+                        *title != '\0' ? title : name, hw_recording_get_camera(recording), epoch,
                         hw_recording_get_short_identity(recording)));
     add(subject->foot, picture->rules != NULL && *picture->rules != '\0'
                            ? g_strdup_printf("Rule set: %s", picture->rules)

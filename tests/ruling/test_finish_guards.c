@@ -302,10 +302,13 @@ a_start_after_the_crossing_gives_no_time(void)
     };
     g_autoptr(HwFinishList) list = fixture_list(fixture, &given);
     g_assert_false(fixture_row(list, "1", NULL)->has_official);
-    g_assert_true(fixture_says(list, "Bib 1", "before its start", NULL));
+    g_assert_true(fixture_says(list, "Bib 1 crossed", "before the start", NULL));
     given.gun = "2027-06-12T15:59:00+02:00";
     g_autoptr(HwFinishList) day = fixture_list(fixture, &given);
-    g_assert_true(fixture_says(day, "Bib 1", "more than a day", NULL));
+    g_assert_true(fixture_says(day, "Bib 1 took", "more than a day", NULL));
+    given.markers = "1,1000\n2,1100\n3,1200";
+    g_autoptr(HwFinishList) many = fixture_list(fixture, &given);
+    g_assert_true(fixture_says(many, "Bib 1 and 2 others took more than a day", NULL));
 }
 
 static void
