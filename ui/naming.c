@@ -10,6 +10,8 @@
 /* Half a wheel (0.334 m) at 12 m/s: nearer than this a second marker may be the same rider's. A guard against
  * slips only; nothing is measured by it. */
 #define NEAR_NS INT64_C(28000000)
+/* A line this near a marker stands on it: closer than half a column no eye sets it. */
+#define HERE_CELLS 0.5
 
 static double
 marker_cell(HwSession *session, int index)
@@ -200,8 +202,37 @@ dup_near_doubt(HwSession *session, int near, int64_t away_ns)
     return g_strdup_printf(_("Marker %s stands only %s ms away."), name, away);
 }
 
+/* Another rider's marker than the one typed. */
+static bool
+is_anothers(const HwMarker *marker, const HwNaming *naming)
+{
+    if (!marker || hw_marker_is_unnamed(marker))
+        return false;
+    return !naming->bib || strcmp(marker->bib, naming->bib) != 0 ||
+           (naming->category && *marker->category && strcmp(marker->category, naming->category) != 0);
+}
+
+/* A named rider is never renamed by the way: what stands exactly here is asked about, what stands beside it
+ * is left alone. Asks where true. */
+static bool
+ask_about_another(HwSession *session, HwNaming *naming, const char *doubt)
+{
+    const HwMarker *marker = hw_session_get_marker(session, naming->marker);
+    g_autofree char *here = NULL;
+    g_autofree char *end = NULL;
+
+    if (!is_anothers(marker, naming))
+        return false;
+    here = g_strdup_printf(_("Marker %s stands here."), marker->bib);
+    end = naming->bib ? g_strdup_printf(_("Enter twice renames it to %s."), naming->bib)
+                      : g_strdup(_("Enter twice takes its name off."));
+    naming->state = HW_NAMING_ASK;
+    naming->sentence = doubt ? g_strjoin(" ", doubt, here, end, NULL) : g_strjoin(" ", here, end, NULL);
+    return true;
+}
+
 HwNaming *
-hw_naming_make(HwSession *session, const char *text, double reach_px)
+hw_naming_make(HwSession *session, const char *text, double reach_px, bool renames)
 {
     HwNaming *naming = g_new0(HwNaming, 1);
     g_autofree char *typed = g_strstrip(g_strdup(text));
@@ -223,6 +254,9 @@ hw_naming_make(HwSession *session, const char *text, double reach_px)
         return refuse(
             naming,
             g_strdup_printf(_("%d markers stand at the line: click the one meant, or zoom in."), n_within));
+    if (!renames && is_anothers(hw_session_get_marker(session, naming->marker), naming) &&
+        fabs(marker_cell(session, naming->marker) - line) > HERE_CELLS)
+        naming->marker = -1;
     reason = hw_words_void_reason(session, line);
     if (naming->marker < 0 && reason)
         return refuse(naming, g_strdup_printf(_("There is no picture here: %s. Move the line."), reason));
@@ -233,6 +267,10 @@ hw_naming_make(HwSession *session, const char *text, double reach_px)
         return refuse(naming, doubt);
     if (naming->bib)
         doubt = dup_bib_doubt(session, naming);
+    if (!renames && ask_about_another(session, naming, doubt)) {
+        g_free(doubt);
+        return naming;
+    }
     near = naming->marker < 0 ? find_near(session, -1, &away_ns) : -1;
     if (!doubt && near >= 0)
         doubt = dup_near_doubt(session, near, away_ns);

@@ -22,8 +22,10 @@ typedef struct {
 } HwNaming;
 
 /* `text` as typed ("" or "?": unnamed; "4 women": number 4 of that category, or of the one that begins so);
- * reach_px: how near the line a marker is under it, in device pixels. Something must be open. */
-HwNaming *hw_naming_make(HwSession *session, const char *text, double reach_px);
+ * reach_px: how near the line a marker is under it, in device pixels; `renames`: to rename was what the judge
+ * asked for, else a marker of another rider is asked about where the line stands on it, and left alone beside
+ * it. Something must be open. */
+HwNaming *hw_naming_make(HwSession *session, const char *text, double reach_px, bool renames);
 void hw_naming_free(HwNaming *naming);
 
 /* The same doubt about the same thing as another one: what a second Enter may confirm. */

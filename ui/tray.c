@@ -15,6 +15,7 @@ struct _HwTray {
     HwSession *session;
     HwNaming *asked; /* the doubt that a second Enter confirms */
     char *said;
+    bool renames; /* F2: what is typed is meant for the marker at the line */
 
     GtkLabel *time;
     GtkLabel *place;
@@ -142,14 +143,18 @@ update(HwTray *tray)
     g_autoptr(HwNaming) naming = NULL;
 
     show_line(tray);
-    if (!*typed || !hw_session_get_document(tray->session)) {
+    if (!hw_session_get_document(tray->session) || (!*typed && !tray->asked)) {
         g_clear_pointer(&tray->asked, hw_naming_free);
         show_marker(tray);
         return;
     }
-    naming = hw_naming_make(tray->session, typed, reach_px(tray));
+    naming = hw_naming_make(tray->session, typed, reach_px(tray), tray->renames);
     if (tray->asked && !hw_naming_equal(naming, tray->asked))
         g_clear_pointer(&tray->asked, hw_naming_free);
+    if (!*typed && !tray->asked) {
+        show_marker(tray);
+        return;
+    }
     set_text(tray->rider, naming->rider);
     if (tray->asked) {
         g_autofree char *again = g_strdup_printf(_("%s Enter once more, or Esc."), naming->sentence);
@@ -173,12 +178,14 @@ static void
 session_cb(HwTray *tray)
 {
     forget_said(tray);
+    tray->renames = false;
     update(tray);
 }
 
 static void
 finish(HwTray *tray)
 {
+    tray->renames = false;
     gtk_editable_set_text(GTK_EDITABLE(tray->entry), "");
     g_signal_emit(tray, signals[DONE], 0);
 }
@@ -191,7 +198,7 @@ entry_activate_cb(HwTray *tray)
 
     if (!hw_session_get_document(tray->session))
         return;
-    naming = hw_naming_make(tray->session, typed, reach_px(tray));
+    naming = hw_naming_make(tray->session, typed, reach_px(tray), tray->renames);
     if (naming->state == HW_NAMING_REFUSED) {
         hw_tray_say(tray, naming->sentence);
         set_sentence_class(tray, "error");
@@ -281,6 +288,7 @@ hw_tray_set_session(HwTray *tray, HwSession *session)
 void
 hw_tray_begin(HwTray *tray, const char *text)
 {
+    tray->renames = false;
     gtk_widget_grab_focus(GTK_WIDGET(tray->entry));
     gtk_editable_set_text(GTK_EDITABLE(tray->entry), text);
     gtk_editable_set_position(GTK_EDITABLE(tray->entry), -1);
@@ -294,6 +302,8 @@ hw_tray_begin_rename(HwTray *tray)
         hw_session_get_marker(tray->session, hw_naming_find_marker(tray->session, reach_px(tray), &n_within));
 
     hw_tray_begin(tray, marker && !hw_marker_is_unnamed(marker) ? marker->bib : "");
+    tray->renames = true;
+    update(tray);
     gtk_editable_select_region(GTK_EDITABLE(tray->entry), 0, -1);
 }
 

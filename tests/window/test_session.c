@@ -163,7 +163,7 @@ enter_names_the_marker_under_the_line_and_no_other(void)
     delete_all(session);
     hw_session_set_reading_cell(session, 1000.0, true);
     placed = hw_session_place_marker(session, 1000.0, 200.0, NULL, NULL);
-    naming = hw_naming_make(session, "1", 6.0);
+    naming = hw_naming_make(session, "1", 6.0, false);
     g_assert_cmpint(naming->state, ==, HW_NAMING_READY);
     g_assert_cmpint(naming->marker, ==, placed);
     g_assert_cmpstr(naming->rider, !=, "");
@@ -182,7 +182,7 @@ a_number_that_stands_already_is_asked_about(void)
         session, hw_axis_position(hw_session_get_axis(session), hw_session_get_marker(session, 5)->column),
         true);
     hw_session_set_selection(session, 5);
-    naming = hw_naming_make(session, taken, 6.0);
+    naming = hw_naming_make(session, taken, 6.0, false);
     g_assert_cmpint(naming->state, ==, HW_NAMING_ASK);
 }
 
@@ -194,7 +194,7 @@ a_number_nobody_has_is_asked_about(void)
 
     delete_all(session);
     hw_session_set_reading_cell(session, 1000.0, true);
-    naming = hw_naming_make(session, "4711", 6.0);
+    naming = hw_naming_make(session, "4711", 6.0, false);
     g_assert_cmpint(naming->state, ==, HW_NAMING_ASK);
     g_assert_cmpint(naming->marker, ==, -1);
 }
@@ -209,9 +209,42 @@ a_second_marker_close_by_is_never_placed_silently(void)
     hw_session_zoom(session, 500.0, 1000.0);
     hw_session_place_marker(session, 1000.0, 200.0, "1", NULL);
     hw_session_set_reading_cell(session, 1003.0, true);
-    naming = hw_naming_make(session, "2", 6.0);
+    naming = hw_naming_make(session, "2", 6.0, false);
     g_assert_cmpint(naming->marker, ==, -1);
     g_assert_cmpint(naming->state, ==, HW_NAMING_ASK);
+}
+
+static void
+a_named_rider_is_never_renamed_by_the_way(void)
+{
+    g_autoptr(HwSession) session = open_sample("aldermoor-sprint");
+    g_autoptr(HwNaming) here = NULL;
+    g_autoptr(HwNaming) empty = NULL;
+    g_autoptr(HwNaming) beside = NULL;
+    g_autoptr(HwNaming) meant = NULL;
+
+    delete_all(session);
+    hw_session_set_reading_cell(session, 1000.0, true);
+    hw_session_place_marker(session, 1000.0, 200.0, "1", NULL);
+    here = hw_naming_make(session, "2", 6.0, false);
+    g_assert_cmpint(here->state, ==, HW_NAMING_ASK);
+    g_assert_cmpint(here->marker, ==, 0);
+    g_assert_cmpstr(here->sentence, ==, "Marker 1 stands here. Enter twice renames it to 2.");
+    empty = hw_naming_make(session, "", 6.0, false);
+    g_assert_cmpint(empty->state, ==, HW_NAMING_ASK);
+    /* Two columns off: within reach in this view, and yet another rider's place. */
+    hw_session_set_reading_cell(session, 1002.0, true);
+    beside = hw_naming_make(session, "2", 6.0, false);
+    g_assert_cmpint(beside->state, ==, HW_NAMING_ASK);
+    g_assert_cmpint(beside->marker, ==, -1);
+    g_assert_cmpstr(beside->sentence, ==,
+                    "Marker 1 stands only 1.0 ms away. Enter twice places it all the same.");
+    g_assert_true(hw_naming_commit(session, beside));
+    g_assert_cmpstr(hw_session_get_marker(session, 0)->bib, ==, "1");
+    g_assert_cmpstr(hw_session_get_marker(session, 1)->bib, ==, "2");
+    meant = hw_naming_make(session, "3", 6.0, true);
+    g_assert_cmpint(meant->state, ==, HW_NAMING_READY);
+    g_assert_cmpint(meant->marker, ==, 1);
 }
 
 static void
@@ -224,7 +257,7 @@ nothing_out_of_view_is_named(void)
     hw_session_zoom_one_to_one(session);
     hw_session_pan_views(session, 3.0);
     g_assert_false(hw_session_is_in_view(session, 0.0));
-    naming = hw_naming_make(session, "1", 6.0);
+    naming = hw_naming_make(session, "1", 6.0, false);
     g_assert_cmpint(naming->state, ==, HW_NAMING_REFUSED);
     g_assert_false(hw_naming_commit(session, naming));
 }
@@ -326,6 +359,8 @@ main(int argc, char **argv)
     g_test_add_func("/session/a_number_nobody_has_is_asked_about", a_number_nobody_has_is_asked_about);
     g_test_add_func("/session/a_second_marker_close_by_is_never_placed_silently",
                     a_second_marker_close_by_is_never_placed_silently);
+    g_test_add_func("/session/a_named_rider_is_never_renamed_by_the_way",
+                    a_named_rider_is_never_renamed_by_the_way);
     g_test_add_func("/session/nothing_out_of_view_is_named", nothing_out_of_view_is_named);
     g_test_add_func("/session/a_number_used_twice_leaves_the_list_and_both_unnamed",
                     a_number_used_twice_leaves_the_list_and_both_unnamed);

@@ -155,6 +155,20 @@ def a_doubtful_number_is_asked_about_and_taken_with_the_second_enter():
             wait_for("the conflict", lambda: desk.says("Number 9 stands at 2 markers"))
 
 
+def a_number_typed_beside_a_named_marker_takes_nobodys_place():
+    with Folder() as folder, desk_with_picture(folder) as desk:
+        desk.focus_picture()
+        desk.keys("Home", "5", "0", "Return")
+        wait_markers(desk, 1)
+        desk.keys("5", "1", "Return")
+        wait_for("the question", lambda: desk.says("Marker 50 stands here. Enter twice renames it to 51."))
+        desk.keys("Escape")
+        desk.keys("Right", "Right", "5", "1", "Return", "Return")
+        wait_markers(desk, 2)
+        wait_for("both riders", lambda: [bib for bib in ("50", "51")
+                                         if any(", number %s" % bib in row for row in desk.rows())] == ["50", "51"])
+
+
 def a_number_worn_in_two_categories_must_say_which():
     with Folder() as folder:
         path = write_recording(folder, "made")
@@ -403,6 +417,7 @@ run([
     a_marker_is_placed_named_moved_and_deleted_by_keys_alone,
     every_act_on_markers_can_be_undone_and_done_again,
     a_doubtful_number_is_asked_about_and_taken_with_the_second_enter,
+    a_number_typed_beside_a_named_marker_takes_nobodys_place,
     a_number_worn_in_two_categories_must_say_which,
     a_passage_is_chosen_where_markers_belong_to_several,
     the_picture_is_exported,
