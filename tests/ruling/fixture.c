@@ -20,8 +20,9 @@ write_png(const char *folder, const char *name, guint width)
     g_assert_true(png_image_write_to_file(&image, path, 0, pixels, 0, NULL));
 }
 
-Fixture *
-fixture_new(void)
+/* Stamped evenly, the second block with room for `missing` columns more, or by rate. */
+static Fixture *
+make(bool even, int missing)
 {
     Fixture *fixture = g_new0(Fixture, 1);
     fixture->folder = g_dir_make_tmp("hw-ruling-XXXXXX", NULL);
@@ -30,8 +31,13 @@ fixture_new(void)
         g_autofree char *name = g_strdup_printf("b%d.png", i);
         write_png(fixture->folder, name, FIXTURE_BLOCK_COLUMNS);
         gint64 first_ns = (gint64)i * FIXTURE_BLOCK_COLUMNS * 1000000 + 500000 + (i == 2 ? 1000000000 : 0);
-        g_string_append_printf(blocks, "%s{\"file\":\"%s\",\"columns\":%d,\"first_ns\":%" G_GINT64_FORMAT "}",
-                               i > 0 ? "," : "", name, FIXTURE_BLOCK_COLUMNS, first_ns);
+        gint64 last_ns =
+            first_ns + (FIXTURE_BLOCK_COLUMNS - 1 + (i == 1 ? missing : 0)) * G_GINT64_CONSTANT(1000000);
+        g_autofree char *last =
+            even ? g_strdup_printf(",\"last_ns\":%" G_GINT64_FORMAT, last_ns) : g_strdup("");
+        g_string_append_printf(blocks,
+                               "%s{\"file\":\"%s\",\"columns\":%d,\"first_ns\":%" G_GINT64_FORMAT "%s}",
+                               i > 0 ? "," : "", name, FIXTURE_BLOCK_COLUMNS, first_ns, last);
     }
     g_autofree char *manifest = g_strdup_printf(
         "{\"halfwheel_recording\":1,\"epoch\":\"2027-06-13T16:00:00+02:00\",\"travel\":\"left\","
@@ -47,6 +53,18 @@ fixture_new(void)
     fixture->strip = hw_strip_new(fixture->recording, fixture->cache, &error);
     g_assert_no_error(error);
     return fixture;
+}
+
+Fixture *
+fixture_new(void)
+{
+    return make(false, 0);
+}
+
+Fixture *
+fixture_new_with_drop(int missing)
+{
+    return make(true, missing);
 }
 
 void

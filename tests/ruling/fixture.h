@@ -18,6 +18,10 @@ typedef struct {
 #define FIXTURE_BLOCKS 3 /* the third begins 1 s late: a void before it */
 
 Fixture *fixture_new(void);
+
+/* The same with even stamps, of which those of the second block have room for `missing` columns more than it
+ * has. */
+Fixture *fixture_new_with_drop(int missing);
 void fixture_free(Fixture *fixture);
 
 /* What a list is derived from; NULL where there is none. */

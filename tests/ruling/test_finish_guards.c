@@ -31,6 +31,22 @@ a_marker_beside_a_void_is_named(void)
 }
 
 static void
+a_hidden_drop_is_named_and_in_the_uncertainty(void)
+{
+    /* Two columns missing somewhere in the second block: by eye 1/√12 ms, and 2/√12 ms for them, twice
+     * (GUM 4.3.7, 5.1.2): √(2·(1 + 4)/12) ms. */
+    g_autoptr(Fixture) fixture = fixture_new_with_drop(2);
+    Case given = { .markers = "1,5000\n2,5004", .start_list = three, .gun = GUN };
+    g_autoptr(HwFinishList) list = fixture_list(fixture, &given);
+    g_assert_true(fixture_says(list, "b1.png", "2 columns more", NULL));
+    g_assert_cmpfloat_with_epsilon(fixture_row(list, "2", NULL)->prev.u_gap_ns, 912870.93, 0.01);
+    g_autoptr(Fixture) whole = fixture_new_with_drop(0);
+    g_autoptr(HwFinishList) sure = fixture_list(whole, &given);
+    g_assert_false(fixture_says(sure, "columns more", NULL));
+    g_assert_cmpfloat_with_epsilon(fixture_row(sure, "2", NULL)->prev.u_gap_ns, 408248.29, 0.01);
+}
+
+static void
 level_crossings_share_a_place_whoever_was_entered_first(void)
 {
     g_autoptr(Fixture) fixture = fixture_new();
@@ -348,6 +364,7 @@ main(int argc, char **argv)
 #define ADD(name) g_test_add_func("/finish_guards/" #name, name)
     ADD(a_void_is_in_the_gap_across_it);
     ADD(a_marker_beside_a_void_is_named);
+    ADD(a_hidden_drop_is_named_and_in_the_uncertainty);
     ADD(level_crossings_share_a_place_whoever_was_entered_first);
     ADD(differences_are_never_rounded_themselves);
     ADD(a_list_without_rule_set_says_so);
