@@ -8,6 +8,9 @@
 #include <math.h>
 #include <string.h>
 
+/* Half of a 700C road wheel's diameter of 0.668 m. */
+#define HALF_WHEEL_M 0.334
+
 const HwMarkers *
 hw_session_get_markers(HwSession *session)
 {
@@ -290,6 +293,28 @@ hw_session_place_marker(HwSession *session, double cell, double row, const char 
     return index;
 }
 
+/* The speed is the wheel's, not the click's: a marker that stays on its wheel keeps it. Held against where
+ * the drag began, so that many small steps are one long one. */
+static void
+keep_speed(HwSession *session, const HwMarker *old, HwMarker *marker, guint merge)
+{
+    HwAxis *axis = session->document->axis;
+    int64_t from_ns, to_ns;
+
+    if (merge == 0 || merge != session->moved_merge) {
+        session->moved_merge = merge;
+        session->moved_column = old->column;
+        session->moved_speed_mps = old->speed_mps;
+        session->moved_u_speed_mps = old->u_speed_mps;
+    }
+    from_ns = hw_axis_instant(axis, hw_axis_position(axis, session->moved_column));
+    to_ns = hw_axis_instant(axis, hw_axis_position(axis, marker->column));
+    if (!(fabs((double)(to_ns - from_ns)) * 1e-9 * session->moved_speed_mps < HALF_WHEEL_M))
+        return;
+    marker->speed_mps = session->moved_speed_mps;
+    marker->u_speed_mps = session->moved_u_speed_mps;
+}
+
 bool
 hw_session_move_marker(HwSession *session, int index, double cell, double row, guint merge)
 {
@@ -308,6 +333,7 @@ hw_session_move_marker(HwSession *session, int index, double cell, double row, g
     if (!isnan(row))
         marker->row = row;
     set_state(session, marker);
+    keep_speed(session, old, marker, merge);
     push(session, markers, index, _("Move marker"), merge);
     return true;
 }

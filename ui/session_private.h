@@ -13,6 +13,10 @@ struct _HwSession {
     char *list_sentence;
     GPtrArray *conflicts; /* char* */
     guint last_merge;
+    guint moved_merge;   /* the drag that goes on */
+    double moved_column; /* where it began, and the speed the marker had there */
+    double moved_speed_mps;
+    double moved_u_speed_mps;
     bool was_modified;
 
     int selection;

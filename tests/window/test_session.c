@@ -111,6 +111,34 @@ one_drag_is_one_step_of_undo(void)
 }
 
 static void
+a_marker_keeps_its_speed_as_long_as_it_is_on_its_wheel(void)
+{
+    g_autoptr(HwSession) session = open_sample("aldermoor-sprint");
+    double column = hw_session_get_marker(session, 0)->column;
+    double speed = hw_session_get_marker(session, 0)->speed_mps;
+    double u_speed = hw_session_get_marker(session, 0)->u_speed_mps;
+    guint merge = hw_session_new_merge_key(session);
+    double wheel_columns;
+
+    g_assert_cmpfloat(speed, >, 5.0);
+    /* 0.334 m, half a road wheel across, at the 2000 columns a second of this sample. */
+    wheel_columns = 0.334 / speed * 2000.0;
+    g_assert_true(hw_session_move_marker(session, 0, column + 0.9 * wheel_columns, NAN, 0));
+    g_assert_cmpfloat(hw_session_get_marker(session, 0)->speed_mps, ==, speed);
+    g_assert_cmpfloat(hw_session_get_marker(session, 0)->u_speed_mps, ==, u_speed);
+    g_assert_true(hw_session_undo(session));
+    g_assert_true(hw_session_move_marker(session, 0, column + 1.1 * wheel_columns, NAN, 0));
+    g_assert_true(isnan(hw_session_get_marker(session, 0)->speed_mps));
+    g_assert_true(hw_session_undo(session));
+    /* A drag of many small steps is one long one; back on the wheel the speed is there again. */
+    for (int i = 1; i <= 4; i++)
+        g_assert_true(hw_session_move_marker(session, 0, column + 0.4 * i * wheel_columns, NAN, merge));
+    g_assert_true(isnan(hw_session_get_marker(session, 0)->speed_mps));
+    g_assert_true(hw_session_move_marker(session, 0, column + 2.0, NAN, merge));
+    g_assert_cmpfloat(hw_session_get_marker(session, 0)->speed_mps, ==, speed);
+}
+
+static void
 undo_back_to_what_was_saved_is_not_modified(void)
 {
     g_autoptr(HwSession) session = open_sample("aldermoor-sprint");
@@ -348,6 +376,8 @@ main(int argc, char **argv)
     g_test_add_func("/session/a_nudge_moves_as_seen_whatever_the_travel",
                     a_nudge_moves_as_seen_whatever_the_travel);
     g_test_add_func("/session/one_drag_is_one_step_of_undo", one_drag_is_one_step_of_undo);
+    g_test_add_func("/session/a_marker_keeps_its_speed_as_long_as_it_is_on_its_wheel",
+                    a_marker_keeps_its_speed_as_long_as_it_is_on_its_wheel);
     g_test_add_func("/session/undo_back_to_what_was_saved_is_not_modified",
                     undo_back_to_what_was_saved_is_not_modified);
     g_test_add_func("/session/a_new_act_drops_what_could_be_redone", a_new_act_drops_what_could_be_redone);
