@@ -253,6 +253,7 @@ list_changed_cb(HwFinishPanel *panel)
     gtk_widget_set_visible(GTK_WIDGET(panel->empty), !list || list->rows->len == 0);
     set_text(panel->check, check ? check : "");
     set_text(panel->check_whole, whole ? whole : "");
+    gtk_widget_set_visible(GTK_WIDGET(panel->check_whole), whole && *whole);
     set_text(panel->summary, list && list->unrounded ? _("Measured order, not rounded") : _("Finish list"));
     show_selection(panel);
 }

@@ -76,13 +76,26 @@ add_count(GString *text, int count, const char *word)
     g_string_append_printf(text, " · %d %s", count, word);
 }
 
+/* Without a start list nobody is accounted for: who has a place is counted. */
+static int
+count_ranked(const HwFinishList *list)
+{
+    int ranked = 0;
+
+    if (list->has_start_list)
+        return list->check.ranked;
+    for (guint i = 0; i < list->rows->len; i++)
+        ranked += ((const HwFinishRow *)g_ptr_array_index(list->rows, i))->rank > 0;
+    return ranked;
+}
+
 char *
 hw_pair_words_dup_check(const HwFinishList *list)
 {
     const HwRiderCheck *check = &list->check;
     GString *text = g_string_new(NULL);
 
-    g_string_append_printf(text, _("%d ranked"), check->ranked);
+    g_string_append_printf(text, _("%d ranked"), count_ranked(list));
     add_count(text, check->lap, "LAP");
     add_count(text, check->otl, "OTL");
     add_count(text, check->dnf, "DNF");
@@ -91,7 +104,10 @@ hw_pair_words_dup_check(const HwFinishList *list)
     if (list->has_start_list)
         g_string_append_printf(text, _(" · %d missing"), check->missing);
     add_count(text, check->unnamed, _("unnamed"));
-    add_count(text, check->not_in_list, _("not in the start list"));
+    if (list->has_start_list)
+        add_count(text, check->not_in_list, _("not in the start list"));
+    else
+        g_string_append(text, _(" · no start list, so nobody can be missed"));
     return g_string_free(text, FALSE);
 }
 
@@ -101,7 +117,7 @@ hw_pair_words_dup_check_whole(const HwFinishList *list)
     const HwRiderCheck *check = &list->check;
 
     if (!list->has_start_list)
-        return g_strdup(_("No start list: nobody can be missing."));
+        return g_strdup("");
     return g_strdup_printf(
         _("%d entered − %d DNS = %d starters = %d ranked + %d LAP + %d OTL + %d DNF + %d ABD + "
           "%d DSQ + %d still missing"),

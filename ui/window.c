@@ -20,6 +20,23 @@ hw_window_hide_message(HwWindow *window)
     gtk_widget_set_visible(window->message, FALSE);
 }
 
+static void
+undo_toast_dismissed_cb(HwWindow *window, AdwToast *toast)
+{
+    if (window->undo_toast == toast)
+        g_clear_object(&window->undo_toast);
+}
+
+/* The button would undo something else than it says. */
+static void
+dismiss_undo_toast(HwWindow *window)
+{
+    g_autoptr(AdwToast) toast = g_steal_pointer(&window->undo_toast);
+
+    if (toast)
+        adw_toast_dismiss(toast);
+}
+
 void
 hw_window_toast(HwWindow *window, const char *text, bool undo)
 {
@@ -29,6 +46,10 @@ hw_window_toast(HwWindow *window, const char *text, bool undo)
     if (undo) {
         adw_toast_set_button_label(toast, _("Undo"));
         adw_toast_set_action_name(toast, "win.undo");
+        dismiss_undo_toast(window);
+        window->undo_toast = g_object_ref(toast);
+        g_signal_connect_object(toast, "dismissed", G_CALLBACK(undo_toast_dismissed_cb), window,
+                                G_CONNECT_SWAPPED);
     }
     adw_toast_overlay_add_toast(window->toasts, toast);
 }
@@ -105,6 +126,7 @@ update_incomplete(HwWindow *window)
 static void
 document_changed_cb(HwWindow *window)
 {
+    dismiss_undo_toast(window);
     update_title(window);
     update_incomplete(window);
     hw_window_update_actions(window);
@@ -159,6 +181,7 @@ hw_window_dispose(GObject *object)
         g_signal_handlers_disconnect_by_data(window->session, window);
     g_clear_handle_id(&window->opening_delay, g_source_remove);
     g_clear_object(&window->session);
+    g_clear_object(&window->undo_toast);
     g_clear_pointer(&window->samples, g_free);
     gtk_widget_dispose_template(GTK_WIDGET(object), HW_TYPE_WINDOW);
     G_OBJECT_CLASS(hw_window_parent_class)->dispose(object);
@@ -213,6 +236,8 @@ hw_window_init(HwWindow *window)
     g_signal_connect_object(window->session, "strip-changed", G_CALLBACK(update_incomplete), window,
                             G_CONNECT_SWAPPED);
     g_signal_connect_object(window->session, "markers-changed", G_CALLBACK(markers_changed_cb), window,
+                            G_CONNECT_SWAPPED);
+    g_signal_connect_object(window->session, "markers-changed", G_CALLBACK(dismiss_undo_toast), window,
                             G_CONNECT_SWAPPED);
     g_signal_connect_object(window->session, "notify::modified", G_CALLBACK(markers_changed_cb), window,
                             G_CONNECT_SWAPPED);

@@ -21,6 +21,7 @@ struct _HwWindow {
 
     AdwWindowTitle *title;
     AdwToastOverlay *toasts;
+    AdwToast *undo_toast; /* whose button undoes the last act; gone with the next */
     GtkStack *stack;
     AdwStatusPage *failed;
     GtkWidget *sample_button;
@@ -40,7 +41,7 @@ struct _HwWindow {
 /* One sentence in the bar on top, until it is closed or the next act. */
 void hw_window_show_message(HwWindow *window, const char *sentence);
 void hw_window_hide_message(HwWindow *window);
-/* A passing remark; `undo`: with a button that undoes. */
+/* A passing remark; `undo`: with a button that undoes the act just done, there until the next one. */
 void hw_window_toast(HwWindow *window, const char *text, bool undo);
 
 /* "start", "busy", "failed" or "judge"; the others are hidden from everybody. */

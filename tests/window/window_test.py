@@ -6,6 +6,7 @@ import csv
 import os
 import re
 import subprocess
+import time
 
 from desk import COMMAND_LINE, SAMPLES, Atspi, Desk, Folder, screenshot, wait_for, write_recording
 from tap import check, check_equal, run
@@ -124,6 +125,31 @@ def every_act_on_markers_can_be_undone_and_done_again():
         wait_for("the name again", lambda: any(", number 5, " in row for row in desk.rows()))
         desk.keys("ctrl+y")
         wait_markers(desk, 0)
+
+
+def the_undo_offered_after_a_deletion_goes_with_the_next_act():
+    with Folder() as folder, desk_with_picture(folder) as desk:
+        desk.focus_picture()
+        desk.keys("Home", "5", "Return")
+        wait_markers(desk, 1)
+        desk.keys("Delete")
+        wait_markers(desk, 0)
+        wait_for("the offer", lambda: desk.says("Marker 5 deleted"))
+        desk.keys("shift+Right", "Insert")
+        wait_markers(desk, 1)
+        gone_by = time.monotonic() + 4
+        while desk.says("Marker 5 deleted"):
+            check(time.monotonic() < gone_by, "the offer goes long before its 8 seconds are over")
+            time.sleep(0.03)
+
+
+def a_list_without_a_start_list_counts_who_is_ranked():
+    with Folder() as folder, desk_with_picture(folder) as desk:
+        desk.focus_picture()
+        desk.keys("Home", "5", "Return")
+        wait_for("one", lambda: desk.says("1 ranked · no start list, so nobody can be missed"))
+        desk.keys(*["shift+Right"] * 10, "6", "Return")
+        wait_for("two", lambda: desk.says("2 ranked · no start list, so nobody can be missed"))
 
 
 def a_doubtful_number_is_asked_about_and_taken_with_the_second_enter():
@@ -416,6 +442,8 @@ run([
     an_exported_list_is_what_the_command_line_prints,
     a_marker_is_placed_named_moved_and_deleted_by_keys_alone,
     every_act_on_markers_can_be_undone_and_done_again,
+    the_undo_offered_after_a_deletion_goes_with_the_next_act,
+    a_list_without_a_start_list_counts_who_is_ranked,
     a_doubtful_number_is_asked_about_and_taken_with_the_second_enter,
     a_number_typed_beside_a_named_marker_takes_nobodys_place,
     a_number_worn_in_two_categories_must_say_which,
