@@ -168,6 +168,10 @@ act_key(HwPictureView *view, guint key)
     case GDK_KEY_M:
         hw_picture_view_bring_marker(view);
         return true;
+    case GDK_KEY_r:
+    case GDK_KEY_R:
+        gtk_widget_activate_action(widget, "win.toggle-rear", NULL);
+        return true;
     case GDK_KEY_Delete:
     case GDK_KEY_KP_Delete:
         gtk_widget_activate_action(widget, "win.delete-marker", NULL);

@@ -67,6 +67,8 @@ int hw_session_place_marker(HwSession *session, double cell, double row, const c
                             const char *category);
 bool hw_session_move_marker(HwSession *session, int index, double cell, double row, guint merge);
 void hw_session_rename_marker(HwSession *session, int index, const char *bib, const char *category);
+/* A marker of a front tyre becomes one of a rear tyre, and back. */
+void hw_session_toggle_rear(HwSession *session, int index);
 void hw_session_delete_marker(HwSession *session, int index);
 /* A merge key of its own for one drag. */
 guint hw_session_new_merge_key(HwSession *session);
@@ -85,7 +87,8 @@ void hw_session_mark_saved(HwSession *session, guint64 serial, const char *path,
 int hw_session_next_marker(HwSession *session, int direction, bool unnamed_only);
 /* The front marker of a bib in the passage that is judged, else any of that bib, or −1. */
 int hw_session_find_bib(HwSession *session, const char *bib);
-/* The front marker of a rider in the passage that is judged but `index`, or −1. */
+/* The marker of a rider in the passage that is judged, of the same edge as `index` (−1: front) but not that
+ * one; or −1. A rider may have one of each. */
 int hw_session_find_rider(HwSession *session, const char *bib, const char *category, int index);
 
 int hw_session_get_selection(HwSession *session);

@@ -362,6 +362,20 @@ hw_session_rename_marker(HwSession *session, int index, const char *bib, const c
 }
 
 void
+hw_session_toggle_rear(HwSession *session, int index)
+{
+    HwMarkers *markers;
+    HwMarker *marker;
+
+    if (!hw_session_get_marker(session, index))
+        return;
+    markers = hw_markers_copy(hw_session_get_markers(session));
+    marker = g_ptr_array_index(markers->markers, (guint)index);
+    marker->edge = marker->edge == HW_EDGE_FRONT ? HW_EDGE_REAR : HW_EDGE_FRONT;
+    push(session, markers, index, _("Mark rear tyre"), 0);
+}
+
+void
 hw_session_delete_marker(HwSession *session, int index)
 {
     HwMarkers *markers;
@@ -487,9 +501,9 @@ hw_session_next_marker(HwSession *session, int direction, bool unnamed_only)
 }
 
 static bool
-is_judged(HwSession *session, const HwMarker *marker)
+is_judged(HwSession *session, const HwMarker *marker, HwEdge edge)
 {
-    return marker->edge == HW_EDGE_FRONT && strcmp(marker->passage, hw_session_get_passage(session)) == 0;
+    return marker->edge == edge && strcmp(marker->passage, hw_session_get_passage(session)) == 0;
 }
 
 int
@@ -502,7 +516,7 @@ hw_session_find_bib(HwSession *session, const char *bib)
 
         if (strcmp(marker->bib, bib) != 0)
             continue;
-        if (is_judged(session, marker))
+        if (is_judged(session, marker, HW_EDGE_FRONT))
             return i;
         if (found < 0)
             found = i;
@@ -513,10 +527,13 @@ hw_session_find_bib(HwSession *session, const char *bib)
 int
 hw_session_find_rider(HwSession *session, const char *bib, const char *category, int index)
 {
+    const HwMarker *but = hw_session_get_marker(session, index);
+    HwEdge edge = but ? but->edge : HW_EDGE_FRONT;
+
     for (int i = 0; i < (int)hw_session_get_n_markers(session); i++) {
         const HwMarker *marker = hw_session_get_marker(session, i);
 
-        if (i != index && is_judged(session, marker) && strcmp(marker->bib, bib) == 0 &&
+        if (i != index && is_judged(session, marker, edge) && strcmp(marker->bib, bib) == 0 &&
             (!category || !*marker->category || strcmp(marker->category, category) == 0))
             return i;
     }

@@ -122,7 +122,8 @@ show_marker(HwTray *tray)
         g_autofree char *known = rider ? hw_words_dup_rider(rider) : g_strdup("");
 
         name = hw_words_dup_marker(marker);
-        who = g_strdup_printf("%s%s%s", name, *known ? "  " : "", known);
+        who = g_strdup_printf("%s%s%s%s", name, marker->edge == HW_EDGE_REAR ? _(" · rear tyre") : "",
+                              *known ? "  " : "", known);
     }
     set_text(tray->rider, who ? who : "");
     set_sentence_class(tray, NULL);

@@ -149,6 +149,13 @@ delete_act(HwWindow *window, const char *text)
 }
 
 static void
+toggle_rear_act(HwWindow *window, const char *text)
+{
+    (void)text;
+    hw_session_toggle_rear(window->session, hw_session_get_selection(window->session));
+}
+
+static void
 select_bib_act(HwWindow *window, const char *text)
 {
     int index = hw_session_find_bib(window->session, text);
@@ -295,6 +302,7 @@ static const struct {
     { "bring-marker", false, SELECTED, bring_act },
     { "name-marker", true, OPEN, name_act },
     { "delete-marker", false, SELECTED, delete_act },
+    { "toggle-rear", false, SELECTED, toggle_rear_act },
     { "select-bib", true, OPEN, select_bib_act },
     { "zoom-in", false, OPEN, zoom_in_act },
     { "zoom-out", false, OPEN, zoom_out_act },

@@ -276,6 +276,40 @@ a_named_rider_is_never_renamed_by_the_way(void)
 }
 
 static void
+a_rider_may_have_a_front_and_a_rear_marker(void)
+{
+    g_autoptr(HwSession) session = open_sample("aldermoor-sprint");
+    g_autofree char *bib = g_strdup(hw_session_get_marker(session, 0)->bib);
+    double first = hw_session_get_marker(session, 0)->column;
+    g_autoptr(HwNaming) naming = NULL;
+    g_autoptr(HwNaming) again = NULL;
+    int rear;
+
+    delete_all(session);
+    hw_session_zoom(session, 500.0, 1000.0);
+    hw_session_place_marker(session, first, 200.0, bib, NULL);
+    /* A rear axle follows a metre behind the front one: some 100 columns here. */
+    hw_session_set_reading_cell(session, first + 100.0, true);
+    rear = hw_session_place_marker(session, first + 100.0, 200.0, NULL, NULL);
+    naming = hw_naming_make(session, bib, 6.0, false);
+    g_assert_cmpint(naming->state, ==, HW_NAMING_ASK);
+    hw_session_toggle_rear(session, rear);
+    g_assert_cmpint(hw_session_get_marker(session, rear)->edge, ==, HW_EDGE_REAR);
+    g_assert_cmpstr(hw_session_get_undo_act(session), ==, "Mark rear tyre");
+    again = hw_naming_make(session, bib, 6.0, false);
+    g_assert_cmpint(again->state, ==, HW_NAMING_READY);
+    g_assert_true(hw_naming_commit(session, again));
+    g_assert_cmpuint(hw_session_get_conflicts(session)->len, ==, 0);
+    g_assert_nonnull(hw_session_get_list(session, NULL));
+    /* Two of one kind contradict each other all the same. */
+    hw_session_toggle_rear(session, rear);
+    g_assert_cmpint(hw_session_get_marker(session, rear)->edge, ==, HW_EDGE_FRONT);
+    g_assert_cmpuint(hw_session_get_conflicts(session)->len, ==, 1);
+    hw_session_undo(session);
+    g_assert_cmpint(hw_session_get_marker(session, rear)->edge, ==, HW_EDGE_REAR);
+}
+
+static void
 nothing_out_of_view_is_named(void)
 {
     g_autoptr(HwSession) session = open_sample("aldermoor-sprint");
@@ -391,6 +425,8 @@ main(int argc, char **argv)
                     a_second_marker_close_by_is_never_placed_silently);
     g_test_add_func("/session/a_named_rider_is_never_renamed_by_the_way",
                     a_named_rider_is_never_renamed_by_the_way);
+    g_test_add_func("/session/a_rider_may_have_a_front_and_a_rear_marker",
+                    a_rider_may_have_a_front_and_a_rear_marker);
     g_test_add_func("/session/nothing_out_of_view_is_named", nothing_out_of_view_is_named);
     g_test_add_func("/session/a_number_used_twice_leaves_the_list_and_both_unnamed",
                     a_number_used_twice_leaves_the_list_and_both_unnamed);

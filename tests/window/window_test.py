@@ -152,6 +152,22 @@ def a_list_without_a_start_list_counts_who_is_ranked():
         wait_for("two", lambda: desk.says("2 ranked · no start list, so nobody can be missed"))
 
 
+def a_rear_tyre_is_marked_with_r_and_called_so():
+    with Folder() as folder, desk_with_picture(folder) as desk:
+        desk.focus_picture()
+        desk.keys("Home", "5", "Return", *["shift+Right"] * 8, "Insert")
+        wait_markers(desk, 2)
+        desk.keys("r")
+        wait_for("the word", lambda: desk.says("rear tyre"))
+        desk.keys("5", "Return")
+        wait_for("the name", lambda: desk.says("5 · rear tyre"))
+        desk.act("save-markers")
+        path = os.path.join(folder, "made.markers.csv")
+        wait_for("the file", lambda: os.path.exists(path))
+        check_equal([(row["bib"], row["edge"]) for row in markers_on_disk(path)], [("5", "front"), ("5", "rear")],
+                    "what was saved")
+
+
 def a_doubtful_number_is_asked_about_and_taken_with_the_second_enter():
     with Folder() as folder:
         path = write_recording(folder, "made")
@@ -444,6 +460,7 @@ run([
     every_act_on_markers_can_be_undone_and_done_again,
     the_undo_offered_after_a_deletion_goes_with_the_next_act,
     a_list_without_a_start_list_counts_who_is_ranked,
+    a_rear_tyre_is_marked_with_r_and_called_so,
     a_doubtful_number_is_asked_about_and_taken_with_the_second_enter,
     a_number_typed_beside_a_named_marker_takes_nobodys_place,
     a_number_worn_in_two_categories_must_say_which,
