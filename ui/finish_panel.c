@@ -35,7 +35,7 @@ struct _HwFinishPanel {
     GtkLabel *check_whole;
 };
 
-enum { EDIT_NAME, N_SIGNALS };
+enum { EDIT_NAME, TYPED, N_SIGNALS };
 
 static guint signals[N_SIGNALS];
 
@@ -282,12 +282,49 @@ row_selected_cb(HwFinishPanel *panel, GtkListBoxRow *row)
     }
 }
 
+/* The line goes back to the marker where it was moved since: what is typed is meant for that one. */
+static void
+edit_name(HwFinishPanel *panel)
+{
+    const HwMarker *marker = hw_session_get_marker(panel->session, hw_session_get_selection(panel->session));
+
+    if (!marker)
+        return;
+    hw_session_set_reading_cell(panel->session,
+                                hw_axis_position(hw_session_get_axis(panel->session), marker->column), true);
+    g_signal_emit(panel, signals[EDIT_NAME], 0);
+}
+
 static void
 row_activated_cb(HwFinishPanel *panel, GtkListBoxRow *row)
 {
     (void)row;
-    if (hw_session_get_selection(panel->session) >= 0)
-        g_signal_emit(panel, signals[EDIT_NAME], 0);
+    edit_name(panel);
+}
+
+/* The keys of the picture that make sense on a row. */
+static gboolean
+list_key_cb(HwFinishPanel *panel, guint key, guint code, GdkModifierType state)
+{
+    gunichar character = gdk_keyval_to_unicode(key);
+    char text[7] = { 0 };
+
+    (void)code;
+    if (state & (GDK_CONTROL_MASK | GDK_ALT_MASK | GDK_SUPER_MASK))
+        return GDK_EVENT_PROPAGATE;
+    if (key == GDK_KEY_Delete || key == GDK_KEY_KP_Delete) {
+        gtk_widget_activate_action(GTK_WIDGET(panel), "win.delete-marker", NULL);
+        return GDK_EVENT_STOP;
+    }
+    if (key == GDK_KEY_F2) {
+        edit_name(panel);
+        return GDK_EVENT_STOP;
+    }
+    if (!(character >= '0' && character <= '9') && character != '?')
+        return GDK_EVENT_PROPAGATE;
+    g_unichar_to_utf8(character, text);
+    g_signal_emit(panel, signals[TYPED], 0, text);
+    return GDK_EVENT_STOP;
 }
 
 /* Categories are parted by their names. */
@@ -335,6 +372,8 @@ hw_finish_panel_class_init(HwFinishPanelClass *class)
     G_OBJECT_CLASS(class)->dispose = hw_finish_panel_dispose;
     signals[EDIT_NAME] = g_signal_new("edit-name", HW_TYPE_FINISH_PANEL, G_SIGNAL_RUN_LAST, 0, NULL, NULL,
                                       NULL, G_TYPE_NONE, 0);
+    signals[TYPED] = g_signal_new("typed", HW_TYPE_FINISH_PANEL, G_SIGNAL_RUN_LAST, 0, NULL, NULL, NULL,
+                                  G_TYPE_NONE, 1, G_TYPE_STRING);
     gtk_widget_class_set_template_from_resource(widget_class, "/org/halfwheel/Halfwheel/finish_panel.ui");
     gtk_widget_class_bind_template_child(widget_class, HwFinishPanel, summary);
     gtk_widget_class_bind_template_child(widget_class, HwFinishPanel, list_window);
@@ -347,6 +386,7 @@ hw_finish_panel_class_init(HwFinishPanelClass *class)
     gtk_widget_class_bind_template_child(widget_class, HwFinishPanel, check_whole);
     gtk_widget_class_bind_template_callback(widget_class, row_selected_cb);
     gtk_widget_class_bind_template_callback(widget_class, row_activated_cb);
+    gtk_widget_class_bind_template_callback(widget_class, list_key_cb);
 }
 
 static void

@@ -157,6 +157,16 @@ class Desk:
         except (GLib.Error, AttributeError):
             return []
 
+    def click_row(self, part):
+        """Clicks the row of the finish list whose spoken words have `part` in them."""
+
+        def row():
+            return next((item for item in self.everything() if item.get_role() == Atspi.Role.LIST_ITEM and
+                         part in item.get_name()), None)
+
+        box = wait_for("a row with " + part, row).get_component_iface().get_extents(Atspi.CoordType.WINDOW)
+        self.click(box.x + BORDER + box.width // 2, box.y + BORDER + box.height // 2)
+
     def texts(self):
         """What labels say."""
         found = []

@@ -168,6 +168,28 @@ def a_rear_tyre_is_marked_with_r_and_called_so():
                     "what was saved")
 
 
+def the_keys_of_a_marker_work_on_its_row_too():
+    with Folder() as folder, desk_with_picture(folder) as desk:
+        desk.focus_picture()
+        desk.keys("Home", "5", "Return", *["shift+Right"] * 8, "6", "Return")
+        wait_markers(desk, 2)
+        at_six = line_time(desk)
+        desk.click_row(", number 5,")
+        wait_for("the line at the marker", lambda: line_time(desk) != at_six)
+        desk.keys("F2", "8", "Return")
+        wait_for("the new name", lambda: any(", number 8, " in row for row in desk.rows()))
+        desk.click_row(", number 6,")
+        wait_for("the line at the other", lambda: line_time(desk) == at_six)
+        desk.keys("9")
+        wait_for("the question", lambda: desk.says("Marker 6 stands here. Enter twice renames it to 9."))
+        desk.keys("Escape")
+        desk.click_row(", number 8,")
+        wait_for("the line to move", lambda: line_time(desk) != at_six)
+        desk.keys("Delete")
+        wait_markers(desk, 1)
+        wait_for("the way back", lambda: desk.says("Marker 8 deleted"))
+
+
 def a_doubtful_number_is_asked_about_and_taken_with_the_second_enter():
     with Folder() as folder:
         path = write_recording(folder, "made")
@@ -461,6 +483,7 @@ run([
     the_undo_offered_after_a_deletion_goes_with_the_next_act,
     a_list_without_a_start_list_counts_who_is_ranked,
     a_rear_tyre_is_marked_with_r_and_called_so,
+    the_keys_of_a_marker_work_on_its_row_too,
     a_doubtful_number_is_asked_about_and_taken_with_the_second_enter,
     a_number_typed_beside_a_named_marker_takes_nobodys_place,
     a_number_worn_in_two_categories_must_say_which,
