@@ -78,6 +78,26 @@ match_rows(HwFinishPanel *panel, const HwFinishList *list)
     panel->n_to_insert = n_new > panel->n_rows ? n_new - panel->n_rows : 0;
 }
 
+static bool
+has_category(const HwFinishRow *row)
+{
+    return row->in_start_list || *row->category;
+}
+
+/* The category a row stands in. Who is in none parts none: he belongs to the riders before him, the first to
+ * those after. */
+static const char *
+find_heading(const HwFinishList *list, guint at)
+{
+    for (guint i = at + 1; i-- > 0;)
+        if (has_category(g_ptr_array_index(list->rows, i)))
+            return ((const HwFinishRow *)g_ptr_array_index(list->rows, i))->category;
+    for (guint i = at + 1; i < list->rows->len; i++)
+        if (has_category(g_ptr_array_index(list->rows, i)))
+            return ((const HwFinishRow *)g_ptr_array_index(list->rows, i))->category;
+    return "";
+}
+
 /* Shows rows until `until_us` (monotonic; G_MAXINT64: all). True when all are shown. */
 static bool
 fill_rows(HwFinishPanel *panel, gint64 until_us)
@@ -97,7 +117,8 @@ fill_rows(HwFinishPanel *panel, gint64 until_us)
         }
         hw_finish_row_widget_show(
             row_at(panel, at), list, row,
-            hw_session_get_marker(panel->session, hw_session_find_marker(panel->session, row)));
+            hw_session_get_marker(panel->session, hw_session_find_marker(panel->session, row)),
+            find_heading(list, at));
     }
     panel->is_showing = false;
     return panel->next_row >= n_rows;
@@ -331,12 +352,12 @@ list_key_cb(HwFinishPanel *panel, guint key, guint code, GdkModifierType state)
 static void
 header_cb(GtkListBoxRow *row, GtkListBoxRow *before, gpointer data)
 {
-    const char *category = hw_finish_row_widget_get_category(HW_FINISH_ROW_WIDGET(row));
-    const char *former = before ? hw_finish_row_widget_get_category(HW_FINISH_ROW_WIDGET(before)) : "";
+    const char *category = hw_finish_row_widget_get_heading(HW_FINISH_ROW_WIDGET(row));
+    const char *former = before ? hw_finish_row_widget_get_heading(HW_FINISH_ROW_WIDGET(before)) : "";
     GtkWidget *header = gtk_list_box_row_get_header(row);
 
     (void)data;
-    if (g_strcmp0(category, former) == 0) {
+    if (!*category || g_strcmp0(category, former) == 0) {
         gtk_list_box_row_set_header(row, NULL);
         return;
     }

@@ -9,6 +9,7 @@ struct _HwFinishRowWidget {
 
     char *bib; /* with the category: whose row this is */
     char *category;
+    char *heading; /* under which it stands */
     char *spoken;
 
     GtkLabel *place;
@@ -36,6 +37,7 @@ hw_finish_row_widget_finalize(GObject *object)
 
     g_free(widget->bib);
     g_free(widget->category);
+    g_free(widget->heading);
     g_free(widget->spoken);
     G_OBJECT_CLASS(hw_finish_row_widget_parent_class)->finalize(object);
 }
@@ -84,6 +86,7 @@ hw_finish_row_widget_init(HwFinishRowWidget *widget)
 
     widget->bib = g_strdup("");
     widget->category = g_strdup("");
+    widget->heading = g_strdup("");
     gtk_widget_add_css_class(GTK_WIDGET(widget), "finish-row");
     widget->place = add_label(box, 1.0F, 4, figures);
     widget->number = add_label(box, 1.0F, 4, bold_figures);
@@ -170,7 +173,7 @@ dup_spoken(const char *place, const char *number, const char *name, const char *
 
 void
 hw_finish_row_widget_show(HwFinishRowWidget *widget, const HwFinishList *list, const HwFinishRow *row,
-                          const HwMarker *marker)
+                          const HwMarker *marker, const char *heading)
 {
     g_autofree char *place = dup_place(row);
     g_autofree char *number = dup_number(row);
@@ -193,6 +196,10 @@ hw_finish_row_widget_show(HwFinishRowWidget *widget, const HwFinishList *list, c
     if (strcmp(widget->category, row->category) != 0) {
         g_free(widget->category);
         widget->category = g_strdup(row->category);
+    }
+    if (strcmp(widget->heading, heading) != 0) {
+        g_free(widget->heading);
+        widget->heading = g_strdup(heading);
         gtk_list_box_row_changed(GTK_LIST_BOX_ROW(widget));
     }
     spoken = dup_spoken(place, number, name, team, time, gap, rough);
@@ -225,7 +232,7 @@ hw_finish_row_widget_is_of(HwFinishRowWidget *widget, const HwFinishRow *row)
 }
 
 const char *
-hw_finish_row_widget_get_category(HwFinishRowWidget *widget)
+hw_finish_row_widget_get_heading(HwFinishRowWidget *widget)
 {
-    return widget->category;
+    return widget->heading;
 }

@@ -12,12 +12,12 @@ G_DECLARE_FINAL_TYPE(HwFinishRowWidget, hw_finish_row_widget, HW, FINISH_ROW_WID
 
 GtkWidget *hw_finish_row_widget_new(void);
 
-/* `marker` may be NULL. Labels change only where their text does. */
+/* `marker` may be NULL; `heading`: the category it stands in. Labels change only where their text does. */
 void hw_finish_row_widget_show(HwFinishRowWidget *widget, const HwFinishList *list, const HwFinishRow *row,
-                               const HwMarker *marker);
+                               const HwMarker *marker, const char *heading);
 
 /* The same rider as the row shows now. */
 bool hw_finish_row_widget_is_of(HwFinishRowWidget *widget, const HwFinishRow *row);
 
-/* Its category; borrowed. */
-const char *hw_finish_row_widget_get_category(HwFinishRowWidget *widget);
+/* The category it stands in, which may be that of the riders around it; borrowed. */
+const char *hw_finish_row_widget_get_heading(HwFinishRowWidget *widget);

@@ -148,6 +148,9 @@ hw_marker_history_mark_saved(HwMarkerHistory *history, guint64 serial)
 {
     current(history)->merge = 0;
     history->saved_serial = serial;
+    /* A file that is written names the recording with every marker, whatever state it is of. */
+    for (guint i = 0; i < history->states->len; i++)
+        ((State *)g_ptr_array_index(history->states, i))->markers->names_recording = true;
 }
 
 bool

@@ -34,7 +34,7 @@ bool hw_marker_history_redo(HwMarkerHistory *history);
 
 /* Number of the state that holds now, never used twice. */
 guint64 hw_marker_history_get_serial(const HwMarkerHistory *history);
-/* The state of that number is the one on the disk. */
+/* The state of that number is the one on the disk, and all markers are known to be of this recording. */
 void hw_marker_history_mark_saved(HwMarkerHistory *history, guint64 serial);
 bool hw_marker_history_is_modified(const HwMarkerHistory *history);
 

@@ -454,10 +454,11 @@ void
 hw_session_mark_saved(HwSession *session, guint64 serial, const char *path, const char *hex)
 {
     HwDocument *document = session->document;
-    bool modified;
+    bool modified, named;
 
     if (!document)
         return;
+    named = hw_session_get_markers(session)->names_recording;
     if (path != document->markers_path) {
         g_free(document->markers_path);
         document->markers_path = g_strdup(path);
@@ -467,6 +468,10 @@ hw_session_mark_saved(HwSession *session, guint64 serial, const char *path, cons
     g_free(document->markers_on_disk);
     document->markers_on_disk = g_strdup(hex);
     hw_marker_history_mark_saved(session->history, serial);
+    if (!named) {
+        hw_session_derive(session);
+        hw_session_emit(session, HW_SESSION_LIST);
+    }
     modified = hw_marker_history_is_modified(session->history);
     if (modified != session->was_modified) {
         session->was_modified = modified;

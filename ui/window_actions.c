@@ -65,6 +65,13 @@ static void
 save_act(HwWindow *window, const char *text)
 {
     (void)text;
+    /* Markers that do not name their recording yet are worth writing: the file then does. */
+    if (!hw_session_is_modified(window->session) &&
+        (hw_session_get_n_markers(window->session) == 0 ||
+         hw_session_get_markers(window->session)->names_recording)) {
+        hw_window_toast(window, _("Nothing to save."), false);
+        return;
+    }
     hw_window_save_markers(window, false);
 }
 

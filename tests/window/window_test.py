@@ -314,6 +314,37 @@ def a_marker_placed_in_a_shrunken_view_is_to_be_read_again():
         wait_for("the state to change", lambda: desk.rows() and not any(", to re-read" in r for r in desk.rows()))
 
 
+def saving_writes_only_what_is_new_and_then_the_recording_is_named():
+    with Folder() as folder:
+        path = write_recording(folder, "made")
+        saved = path + ".markers.csv"
+        with open(saved, "w") as out:
+            out.write("bib,column,row,edge\n1,100,50,front\n")
+        with Desk(path) as desk:
+            wait_for("the note", lambda: desk.says("The markers do not say which recording they were made on"))
+            desk.act("save-markers")
+            wait_for("the file", lambda: markers_on_disk(saved)[0].get("recording"))
+            wait_for("the note to go",
+                     lambda: not desk.says("The markers do not say which recording they were made on"))
+            stamp = os.stat(saved).st_mtime_ns
+            desk.act("save-markers")
+            wait_for("the remark", lambda: desk.says("Nothing to save."))
+            check_equal(os.stat(saved).st_mtime_ns, stamp, "the time at which the file was written")
+
+
+def riders_outside_the_start_list_part_no_category():
+    with Folder() as folder:
+        path = write_recording(folder, "made")
+        with open(path + ".startlist.csv", "w") as out:
+            out.write("bib,name,category\n1,Ada Test,Elite\n2,Ben Test,Elite\n")
+        with open(path + ".markers.csv", "w") as out:
+            out.write("bib,column,row,edge\n8,60,50,front\n1,100,50,front\n9,300,50,front\n2,600,50,front\n")
+        with Desk(path) as desk:
+            wait_for("the riders", lambda: len(desk.rows()) >= 4)
+            wait_for("the heading", lambda: desk.says("Elite"))
+            check_equal(desk.texts().count("Elite"), 1, "headings")
+
+
 def saving_asks_before_it_replaces_markers_that_were_never_read():
     with Folder() as folder, desk_with_picture(folder) as desk:
         path = os.path.join(folder, "made.markers.csv")
@@ -491,6 +522,8 @@ run([
     the_picture_is_exported,
     a_number_names_the_marker_in_view_and_never_one_that_is_not,
     a_marker_placed_in_a_shrunken_view_is_to_be_read_again,
+    saving_writes_only_what_is_new_and_then_the_recording_is_named,
+    riders_outside_the_start_list_part_no_category,
     saving_asks_before_it_replaces_markers_that_were_never_read,
     closing_with_unsaved_markers_asks,
     what_cannot_be_opened_says_why_and_what_is_open_stays,
