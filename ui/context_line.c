@@ -17,6 +17,7 @@ struct _HwContextLine {
     GtkMenuButton *passages; /* in its place where there are several */
     char *listed;            /* names in the menu */
     GtkMenuButton *rules;
+    GtkLabel *rules_label; /* its own child, which a narrow window may shorten */
     GtkLabel *travel;
     GtkLabel *release;
 };
@@ -102,10 +103,10 @@ show_rules(HwContextLine *line)
     g_autofree char *label = dup_rules_label(rules);
     g_autofree char *tip = NULL;
 
-    if (g_strcmp0(label, gtk_menu_button_get_label(line->rules)) == 0)
+    if (g_strcmp0(label, gtk_label_get_text(line->rules_label)) == 0)
         return;
     tip = rules ? hw_rules_dup_text(rules) : g_strdup(_("Choose the rule set in force"));
-    gtk_menu_button_set_label(line->rules, label);
+    gtk_label_set_text(line->rules_label, label);
     gtk_widget_set_tooltip_text(GTK_WIDGET(line->rules), tip);
 }
 
@@ -186,6 +187,7 @@ hw_context_line_class_init(HwContextLineClass *class)
     gtk_widget_class_bind_template_child(widget_class, HwContextLine, passage);
     gtk_widget_class_bind_template_child(widget_class, HwContextLine, passages);
     gtk_widget_class_bind_template_child(widget_class, HwContextLine, rules);
+    gtk_widget_class_bind_template_child(widget_class, HwContextLine, rules_label);
     gtk_widget_class_bind_template_child(widget_class, HwContextLine, travel);
     gtk_widget_class_bind_template_child(widget_class, HwContextLine, release);
 }

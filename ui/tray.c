@@ -8,6 +8,8 @@
 
 /* How near the line a marker is under it, in logical pixels. */
 #define REACH_PX 6.0
+/* Characters beyond which a sentence is set smaller. */
+#define LONG_SENTENCE 60
 
 struct _HwTray {
     GtkBox parent_instance;
@@ -41,6 +43,24 @@ set_text(GtkLabel *label, const char *text)
 {
     if (g_strcmp0(gtk_label_get_text(label), text) != 0)
         gtk_label_set_text(label, text);
+}
+
+/* A long sentence takes a smaller size rather than more of the picture's height. */
+static void
+set_sentence(HwTray *tray, const char *text)
+{
+    set_text(tray->sentence, text);
+    if (g_utf8_strlen(text, -1) > LONG_SENTENCE)
+        gtk_widget_add_css_class(GTK_WIDGET(tray->sentence), "small");
+    else
+        gtk_widget_remove_css_class(GTK_WIDGET(tray->sentence), "small");
+}
+
+static void
+set_rider(HwTray *tray, const char *text)
+{
+    set_text(tray->rider, text);
+    gtk_widget_set_visible(GTK_WIDGET(tray->rider), *text != '\0');
 }
 
 static bool
@@ -125,16 +145,16 @@ show_marker(HwTray *tray)
         who = g_strdup_printf("%s%s%s%s", name, marker->edge == HW_EDGE_REAR ? _(" · rear tyre") : "",
                               *known ? "  " : "", known);
     }
-    set_text(tray->rider, who ? who : "");
+    set_rider(tray, who ? who : "");
     set_sentence_class(tray, NULL);
     if (tray->said)
-        set_text(tray->sentence, tray->said);
+        set_sentence(tray, tray->said);
     else if (n_within > 1)
-        set_text(tray->sentence, _("More than one marker stands here: zoom in to part them."));
+        set_sentence(tray, _("More than one marker stands here: zoom in to part them."));
     else if (marker && marker->state == HW_MARKER_ROUGH)
-        set_text(tray->sentence, _("To re-read: zoom in to 1 : 1 or closer, set the line, press M."));
+        set_sentence(tray, _("To re-read: zoom in to 1 : 1 or closer, set the line, press M."));
     else
-        set_text(tray->sentence, _("Type a number, then Enter."));
+        set_sentence(tray, _("Type a number, then Enter."));
 }
 
 static void
@@ -156,13 +176,13 @@ update(HwTray *tray)
         show_marker(tray);
         return;
     }
-    set_text(tray->rider, naming->rider);
+    set_rider(tray, naming->rider);
     if (tray->asked) {
         g_autofree char *again = g_strdup_printf(_("%s Enter once more, or Esc."), naming->sentence);
 
-        set_text(tray->sentence, again);
+        set_sentence(tray, again);
     } else {
-        set_text(tray->sentence, naming->sentence);
+        set_sentence(tray, naming->sentence);
     }
     set_sentence_class(tray, naming->state == HW_NAMING_READY ? NULL
                              : naming->state == HW_NAMING_ASK ? "warning"
@@ -321,5 +341,5 @@ hw_tray_say(HwTray *tray, const char *sentence)
 {
     g_free(tray->said);
     tray->said = g_strdup(sentence);
-    set_text(tray->sentence, sentence);
+    set_sentence(tray, sentence);
 }

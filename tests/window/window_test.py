@@ -401,6 +401,35 @@ def what_cannot_be_opened_says_why_and_what_is_open_stays():
             wait_markers(desk, 1)
 
 
+def nothing_is_cut_off_in_the_smallest_window():
+    # 1920 x 1080 at twice the size are 960 x 540; the desktop's own bars take some of it.
+    width, height = 940, 520
+    with Desk(SPRINT, "--rules", "road-1s") as desk:
+        wait_for("the list", lambda: len(ranked(desk.rows())) == 30)
+        subprocess.run(["xdotool", "windowsize", desk.window_id(), str(width), str(height)], check=True)
+
+        def picture_is_narrow():
+            return desk.picture_box()[2] < 650
+
+        wait_for("the size", picture_is_narrow)
+        desk.act("goto-time", "16:02:12.966")
+        wait_for("the line", lambda: line_time(desk).startswith("16:02:12.966"))
+        desk.focus_picture()
+        desk.keys("9", "9", "9")
+        wait_for("a long sentence", lambda: desk.says("No rider has number 999 in the start list."))
+        found = 0
+        for item in desk.everything():
+            if item.get_role() != Atspi.Role.LABEL or not item.get_name():
+                continue
+            box = item.get_component_iface().get_extents(Atspi.CoordType.WINDOW)
+            check(box.x >= 0 and box.x + box.width <= width,
+                  "%r reaches from %d to %d" % (item.get_name(), box.x, box.x + box.width))
+            if item.get_name().startswith(("No rider has", "The regulations")):
+                check(box.y + box.height <= height, "%r ends at %d" % (item.get_name(), box.y + box.height))
+                found += 1
+        check_equal(found, 2, "the sentences at the foot")
+
+
 def an_incomplete_recording_says_so():
     with Desk(os.path.join(SAMPLES, "damaged")) as desk:
         wait_for("the words", lambda: desk.says("Incomplete recording."))
@@ -527,6 +556,7 @@ run([
     saving_asks_before_it_replaces_markers_that_were_never_read,
     closing_with_unsaved_markers_asks,
     what_cannot_be_opened_says_why_and_what_is_open_stays,
+    nothing_is_cut_off_in_the_smallest_window,
     an_incomplete_recording_says_so,
     the_picture_is_never_mirrored,
     arrows_move_the_line_as_seen_on_screen,
