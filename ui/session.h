@@ -122,7 +122,5 @@ double hw_session_get_reading_cell(HwSession *session);
 void hw_session_set_reading_cell(HwSession *session, double cell, bool reveal);
 /* By columns as moved on screen: right above zero. */
 void hw_session_nudge_line(HwSession *session, double columns_on_screen);
-/* False in a void. */
-bool hw_session_get_reading_column(HwSession *session, double *column);
 double hw_session_get_hand_row(HwSession *session);
 void hw_session_set_hand_row(HwSession *session, double row);

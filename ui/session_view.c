@@ -270,12 +270,6 @@ hw_session_nudge_line(HwSession *session, double columns_on_screen)
     hw_session_set_reading_cell(session, session->reading_cell + step, true);
 }
 
-bool
-hw_session_get_reading_column(HwSession *session, double *column)
-{
-    return session->document && hw_axis_column(session->document->axis, session->reading_cell, column);
-}
-
 double
 hw_session_get_hand_row(HwSession *session)
 {

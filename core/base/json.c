@@ -2,7 +2,6 @@
 #include "core/base/json.h"
 
 #include "core/base/base_error.h"
-#include "core/base/input.h"
 #include "core/base/limits.h"
 
 #include <math.h>
@@ -56,14 +55,6 @@ hw_json_parse(const char *text, size_t size, const char *label, GError **error)
                     fault.column, reason);
     }
     return root;
-}
-
-json_t *
-hw_json_read_file(const char *path, size_t max_bytes, GError **error)
-{
-    size_t size;
-    g_autofree char *text = hw_input_read(path, max_bytes, &size, error);
-    return text != NULL ? hw_json_parse(text, size, path, error) : NULL;
 }
 
 #define KIND(type) (1u << (type))

@@ -11,9 +11,6 @@
 
 typedef enum { HW_JSON_OPTIONAL, HW_JSON_REQUIRED } HwJsonNeed;
 
-/* Reads a whole file of at most max_bytes. NULL with an error that names it. json_decref the result. */
-json_t *hw_json_read_file(const char *path, size_t max_bytes, GError **error);
-
 /* Text in memory; `label` names it in errors. */
 json_t *hw_json_parse(const char *text, size_t size, const char *label, GError **error);
 

@@ -203,18 +203,6 @@ hw_case_redo(HwCase *held, GError **error)
     return line != NULL && write_line(held, line, error);
 }
 
-const char *
-hw_case_get_undo_name(const HwCase *held)
-{
-    return hw_ledger_get_undo_name(held->ledger);
-}
-
-const char *
-hw_case_get_redo_name(const HwCase *held)
-{
-    return hw_ledger_get_redo_name(held->ledger);
-}
-
 /* ---- reading ---- */
 
 const json_t *
@@ -227,12 +215,6 @@ GArray *
 hw_case_dup_facts(const HwCase *held, const char *kind)
 {
     return hw_ledger_dup_facts(held->ledger, kind);
-}
-
-bool
-hw_case_visit_journal(HwCase *held, HwStoreVisitor visit, gpointer user_data, GError **error)
-{
-    return hw_store_visit(held->store, visit, user_data, error);
 }
 
 bool

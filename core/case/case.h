@@ -52,18 +52,11 @@ bool hw_case_do(HwCase *held, const HwAct *act, GError **error);
  * as nothing else was done since. HW_CASE_ERROR_ACT where there is none. */
 bool hw_case_undo(HwCase *held, GError **error);
 bool hw_case_redo(HwCase *held, GError **error);
-/* Name of the act that undo or redo would take, or NULL; borrowed until the next act. */
-const char *hw_case_get_undo_name(const HwCase *held);
-const char *hw_case_get_redo_name(const HwCase *held);
-
 /* A fact's value, borrowed until the next act; NULL where there is none. */
 const json_t *hw_case_get_fact(const HwCase *held, const char *kind, const char *key);
 
 /* All facts of a kind as for hw_ledger_dup_facts. */
 GArray *hw_case_dup_facts(const HwCase *held, const char *kind);
-
-/* Called with each line of the journal, in order. */
-bool hw_case_visit_journal(HwCase *held, HwStoreVisitor visit, gpointer user_data, GError **error);
 
 /* Rebuilds the facts from the journal in memory and compares them with the table, and every digest with its
  * chain: false with HW_CASE_ERROR_FALSE that names the first entry or fact that does not hold. hw_case_open

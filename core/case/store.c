@@ -174,42 +174,18 @@ hw_store_open(const char *path, bool write, const char *label, GError **error)
 /* ---- reading ---- */
 
 bool
-hw_store_visit(HwStore *store, HwStoreVisitor visit, gpointer user_data, GError **error)
+hw_store_load(HwStore *store, HwLedger *ledger, GError **error)
 {
-    sqlite3_stmt *statement = prepare(store, "SELECT seq, line, digest FROM journal ORDER BY seq", error);
+    sqlite3_stmt *statement = prepare(store, "SELECT line, digest FROM journal ORDER BY seq", error);
     if (statement == NULL)
         return false;
     int step;
-    while ((step = sqlite3_step(statement)) == SQLITE_ROW) {
-        if (!visit(sqlite3_column_int64(statement, 0), text_at(statement, 1), text_at(statement, 2),
-                   user_data))
-            break;
-    }
-    bool good = step == SQLITE_DONE || step == SQLITE_ROW || set_error(error, store, "read");
+    bool follows = true;
+    while (follows && (step = sqlite3_step(statement)) == SQLITE_ROW)
+        follows = hw_ledger_append(ledger, text_at(statement, 0), text_at(statement, 1), error);
+    bool good = follows && (step == SQLITE_DONE || set_error(error, store, "read"));
     sqlite3_finalize(statement);
     return good;
-}
-
-typedef struct {
-    HwLedger *ledger;
-    GError **error;
-    bool good;
-} Loading;
-
-static bool
-load_line(int64_t seq, const char *line, const char *digest, gpointer user_data)
-{
-    Loading *loading = user_data;
-    (void)seq; /* the ledger counts, and the line bears its own */
-    loading->good = hw_ledger_append(loading->ledger, line, digest, loading->error);
-    return loading->good;
-}
-
-bool
-hw_store_load(HwStore *store, HwLedger *ledger, GError **error)
-{
-    Loading loading = { ledger, error, true };
-    return hw_store_visit(store, load_line, &loading, loading.good ? error : NULL) && loading.good;
 }
 
 static bool

@@ -30,10 +30,6 @@ bool hw_store_compare(HwStore *store, const HwLedger *ledger, GError **error);
 bool hw_store_append(HwStore *store, int64_t seq, const char *line, const char *digest, const json_t *changes,
                      GError **error);
 
-/* Lines in order; false from the visitor ends the walk. */
-typedef bool (*HwStoreVisitor)(int64_t seq, const char *line, const char *digest, gpointer user_data);
-bool hw_store_visit(HwStore *store, HwStoreVisitor visit, gpointer user_data, GError **error);
-
 /* A copy of the whole into a file where nothing is. */
 bool hw_store_copy(HwStore *store, const char *path, GError **error);
 

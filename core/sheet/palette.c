@@ -32,13 +32,6 @@ hw_ink_paper(void)
     };
 }
 
-const char *
-hw_pennant_state_get_word(HwPennantState state)
-{
-    static const char *const words[HW_N_PENNANT_STATES] = { "to re-read", "read", "agreed", "disputed" };
-    return words[state];
-}
-
 void
 hw_colour_set(cairo_t *cr, const HwColour *colour)
 {

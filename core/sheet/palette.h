@@ -41,9 +41,6 @@ typedef struct {
 /* Light, opaque, for paper and files: 12-unit type, hairlines one unit wide, snapped to whole units. */
 HwInk hw_ink_paper(void);
 
-/* "to re-read", "read", "agreed", "disputed". */
-const char *hw_pennant_state_get_word(HwPennantState state);
-
 /* Sets the source. */
 void hw_colour_set(cairo_t *cr, const HwColour *colour);
 

@@ -1,6 +1,7 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 /* JSON is read strictly (RFC 8259), within limits; a value of the wrong kind is named with its place, and
  * leaves what stood there. Digests are SHA-256 as sha256sum prints it. */
+#include "core/base/input.h"
 #include "core/base/json.h"
 
 #include "core/base/base_error.h"
@@ -213,16 +214,18 @@ a_file_over_the_limit_is_not_read(void)
     g_autofree char *folder = g_dir_make_tmp("halfwheel-XXXXXX", NULL);
     g_autofree char *path = g_build_filename(folder, "r.json", NULL);
     g_autoptr(GError) large = NULL, absent = NULL;
+    size_t size = 0;
     g_assert_true(g_file_set_contents(path, "{\"a\": 1}", -1, NULL));
-    g_assert_null(hw_json_read_file(path, 7, &large));
+    g_assert_null(hw_input_read(path, 7, &size, &large));
     g_assert_error(large, HW_BASE_ERROR, HW_BASE_ERROR_RANGE);
-    g_autoptr(json_t) root = hw_json_read_file(path, 8, NULL);
-    g_assert_nonnull(root);
+    g_autofree char *text = hw_input_read(path, 8, &size, NULL);
+    g_assert_cmpstr(text, ==, "{\"a\": 1}");
+    g_assert_cmpuint(size, ==, 8);
     g_unlink(path);
-    g_assert_null(hw_json_read_file(path, 8, &absent));
+    g_assert_null(hw_input_read(path, 8, &size, &absent));
     g_assert_error(absent, HW_BASE_ERROR, HW_BASE_ERROR_NOT_FOUND);
     g_assert_cmpint(mkfifo(path, 0600), ==, 0);
-    g_assert_null(hw_json_read_file(path, 8, NULL)); /* and does not wait for a writer */
+    g_assert_null(hw_input_read(path, 8, &size, NULL)); /* and does not wait for a writer */
     g_unlink(path);
     g_rmdir(folder);
 }
