@@ -3,6 +3,7 @@
 
 #include "core/base/base_error.h"
 #include "core/base/limits.h"
+#include "core/base/number.h"
 
 #include <math.h>
 #include <string.h>
@@ -122,8 +123,11 @@ hw_json_get_double(const json_t *object, const char *key, HwJsonNeed need, doubl
         return true;
     double number = json_number_value(found);
     if (!isfinite(number) || number < min || number > max) {
-        g_set_error(error, HW_BASE_ERROR, HW_BASE_ERROR_RANGE, "%s: “%s” is %g; it must lie from %g to %g.",
-                    where, key, number, min, max);
+        g_autofree char *given = hw_number_dup_double(number);
+        g_autofree char *least = hw_number_dup_double(min);
+        g_autofree char *most = hw_number_dup_double(max);
+        g_set_error(error, HW_BASE_ERROR, HW_BASE_ERROR_RANGE, "%s: “%s” is %s; it must lie from %s to %s.",
+                    where, key, given, least, most);
         return false;
     }
     *value = number;

@@ -2,6 +2,7 @@
 #include "core/case/marker_fact.h"
 
 #include "core/base/limits.h"
+#include "core/base/number.h"
 #include "core/case/case_error.h"
 
 #include <math.h>
@@ -37,9 +38,10 @@ hw_marker_to_fact(const HwMarker *marker, HwStrip *strip, bool names_recording, 
     int64_t time_ns;
     if (!hw_strip_locate(strip, marker->column, &block, &in_block) ||
         !hw_time_base_instant(hw_strip_get_time_base(strip), marker->column, &time_ns)) {
+        g_autofree char *column = hw_number_dup_fixed(marker->column, 3);
         g_set_error(error, HW_CASE_ERROR, HW_CASE_ERROR_ACT,
-                    "The marker of bib %s stands off the picture (column %.3f); place it on the picture.",
-                    marker->bib, marker->column);
+                    "The marker of bib %s stands off the picture (column %s); place it on the picture.",
+                    marker->bib, column);
         return NULL;
     }
     HwRecording *recording = hw_strip_get_recording(strip);
@@ -149,10 +151,11 @@ read_place(const json_t *fact, HwStrip *strip, const char *where, HwMarker *mark
     }
     if (find_column(strip, file, in_block, &marker->column))
         return true;
+    g_autofree char *column = hw_number_dup_fixed(in_block, 3);
     g_set_error(error, HW_CASE_ERROR, HW_CASE_ERROR_FORMAT,
-                "%s (bib %s) stands on column %.3f of %s, which the recording no longer has; give the "
+                "%s (bib %s) stands on column %s of %s, which the recording no longer has; give the "
                 "recording as it was.",
-                where, marker->bib, in_block, file);
+                where, marker->bib, column, file);
     return false;
 }
 

@@ -97,6 +97,15 @@ hw_calibration_read(const char *path, GError **error)
     return text != NULL ? hw_calibration_parse(text, size, path, error) : NULL;
 }
 
+/* "an exposure of 400 µs, the recording has 200 µs"; both given in 10^-9 of the unit. */
+static char *
+dup_difference(const char *what, const char *unit, int64_t ours, int64_t theirs)
+{
+    g_autofree char *one = hw_number_dup_double((double)ours / 1e9);
+    g_autofree char *other = hw_number_dup_double((double)theirs / 1e9);
+    return g_strdup_printf("%s of %s %s, the recording has %s %s", what, one, unit, other, unit);
+}
+
 bool
 hw_calibration_check(const HwCalibration *calibration, const HwRecording *recording, const char *path,
                      GError **error)
@@ -107,12 +116,10 @@ hw_calibration_check(const HwCalibration *calibration, const HwRecording *record
     if (strcmp(calibration->camera, camera) != 0)
         difference = g_strdup_printf("camera %s, the recording is of camera %s", calibration->camera, camera);
     else if (calibration->nominal_rate_nhz != scan->rate_nhz)
-        difference = g_strdup_printf("a nominal scan rate of %.9g Hz, the recording has %.9g Hz",
-                                     (double)calibration->nominal_rate_nhz * 1e-9, scan->rate_hz);
-    else if (calibration->exposure_fs != scan->exposure_fs)
         difference =
-            g_strdup_printf("an exposure of %.9g µs, the recording has %.9g µs",
-                            (double)calibration->exposure_fs * 1e-9, (double)scan->exposure_fs * 1e-9);
+            dup_difference("a nominal scan rate", "Hz", calibration->nominal_rate_nhz, scan->rate_nhz);
+    else if (calibration->exposure_fs != scan->exposure_fs)
+        difference = dup_difference("an exposure", "µs", calibration->exposure_fs, scan->exposure_fs);
     if (difference == NULL)
         return true;
     g_set_error(error, HW_MEASURE_ERROR, HW_MEASURE_ERROR_OTHER_SETUP,

@@ -1,6 +1,7 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 #include "core/ruling/crossing.h"
 
+#include "core/base/number.h"
 #include "core/ruling/ruling_error.h"
 
 #include <math.h>
@@ -120,8 +121,9 @@ take_marker(HwCrossings *crossings, const HwFinishInput *input, const HwMarker *
     if (!find_rider(input, marker, &rider, error))
         return false;
     if (marker->direction == HW_DIRECTION_AGAINST) {
-        add_problem(crossings, "Bib %s at column %.3f rode over the line against the travel: no finish.",
-                    marker->bib, marker->column);
+        g_autofree char *column = hw_number_dup_fixed(marker->column, 3);
+        add_problem(crossings, "Bib %s at column %s rode over the line against the travel: no finish.",
+                    marker->bib, column);
         return true;
     }
     HwCrossing *crossing = find_crossing(crossings->crossings, marker, rider);

@@ -3,6 +3,7 @@
 
 #include "core/base/duration.h"
 #include "core/base/limits.h"
+#include "core/base/number.h"
 #include "core/ruling/finish_build.h"
 
 #include <math.h>
@@ -174,12 +175,14 @@ say_beside_voids(HwFinishList *list, const HwFinishInput *input)
             continue;
         const HwRun *run = hw_time_base_get_run(base, (guint)run_index);
         if (row->column - (double)run->first_col < 1.0 ||
-            (double)(run->first_col + run->n_cols) - row->column < 1.0)
+            (double)(run->first_col + run->n_cols) - row->column < 1.0) {
+            g_autofree char *column = hw_number_dup_fixed(row->column, 3);
             hw_finish_list_say(
                 list,
-                "Bib %s at column %.3f stands beside a place without picture; the crossing itself may "
+                "Bib %s at column %s stands beside a place without picture; the crossing itself may "
                 "lie in it.",
-                row->bib, row->column);
+                row->bib, column);
+        }
     }
 }
 

@@ -2,6 +2,7 @@
 /* The list for a terminal: a table, the account of the riders, what has to be known about it. */
 #include "core/base/duration.h"
 #include "core/base/limits.h"
+#include "core/base/number.h"
 #include "core/ruling/finish_list.h"
 
 #include <math.h>
@@ -26,25 +27,31 @@ width_of(const char *text)
     return width;
 }
 
-/* "3.812 ± 0.408 ms": the measured gap with U, k = 2. */
+/* "3.812 ± 0.408 ms": a figure with its U. */
+static char *
+dup_figure(double value, double expanded, int decimals, const char *unit)
+{
+    g_autofree char *figure = hw_number_dup_fixed(value, decimals);
+    if (isnan(expanded))
+        return g_strdup_printf("%s %s, ± unknown", figure, unit);
+    g_autofree char *sure = hw_number_dup_fixed(expanded, decimals);
+    return g_strdup_printf("%s ± %s %s", figure, sure, unit);
+}
+
+/* The measured gap with U, k = 2. */
 static char *
 dup_measured_gap(const HwGap *gap)
 {
-    double gap_ms = (double)gap->gap_ns * 1e-6;
-    if (isnan(gap->u_gap_ns))
-        return g_strdup_printf("%.3f ms, ± unknown", gap_ms);
-    return g_strdup_printf("%.3f ± %.3f ms", gap_ms, 2.0 * gap->u_gap_ns * 1e-6);
+    return dup_figure((double)gap->gap_ns * 1e-6, 2.0 * gap->u_gap_ns * 1e-6, 3, "ms");
 }
 
-/* "6.5 ± 1.2 cm", likewise; "" without a speed, and over a second, where speed times gap says little. */
+/* Likewise; "" without a speed, and over a second, where speed times gap says little. */
 static char *
 dup_distance(const HwGap *gap)
 {
     if (isnan(gap->distance_m) || ABS(gap->gap_ns) > HW_NS_PER_S)
         return g_strdup("");
-    if (isnan(gap->u_distance_m))
-        return g_strdup_printf("%.1f cm, ± unknown", gap->distance_m * 100);
-    return g_strdup_printf("%.1f ± %.1f cm", gap->distance_m * 100, 200.0 * gap->u_distance_m);
+    return dup_figure(gap->distance_m * 100, 200.0 * gap->u_distance_m, 1, "cm");
 }
 
 static char *

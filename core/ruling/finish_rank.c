@@ -1,6 +1,7 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 #include "core/base/duration.h"
 #include "core/base/limits.h"
+#include "core/base/number.h"
 #include "core/ruling/finish_build.h"
 #include "core/ruling/groups.h"
 
@@ -400,12 +401,14 @@ report_without_category(HwFinishList *list, const GPtrArray *rows)
     for (guint i = 0; i < rows->len; i++) {
         HwFinishRow *row = row_at(rows, i);
         row->status = row->status == HW_STATUS_OK ? HW_STATUS_UNKNOWN : row->status;
-        if (row->crossed)
-            hw_finish_list_say(
-                list,
-                "Bib %s at column %.3f belongs to no known category, so it has no place, and places "
-                "behind it are not certain.",
-                *row->bib != '\0' ? row->bib : "?", row->column);
+        if (!row->crossed)
+            continue;
+        g_autofree char *column = hw_number_dup_fixed(row->column, 3);
+        hw_finish_list_say(
+            list,
+            "Bib %s at column %s belongs to no known category, so it has no place, and places behind it "
+            "are not certain.",
+            *row->bib != '\0' ? row->bib : "?", column);
     }
 }
 

@@ -319,18 +319,19 @@ hw_markers_check_places(const HwMarkers *markers, HwStrip *strip, GError **error
         if (!on_strip || !hw_time_base_instant(base, marker->column, &time_ns)) {
             g_autofree char *where = dup_where(markers, marker);
             g_autofree char *why = dup_why_no_picture(base, marker->column);
+            g_autofree char *column = hw_number_dup_fixed(marker->column, 3);
             g_set_error(error, HW_RULING_ERROR, HW_RULING_ERROR_MARKERS,
-                        "%s: column %.3f %s; place the marker on the picture.", where, marker->column, why);
+                        "%s: column %s %s; place the marker on the picture.", where, column, why);
             return false;
         }
         double shift_col = ((double)marker->time_ns - (double)time_ns) / period_ns;
         if (marker->has_time && fabs(shift_col) >= 0.5) {
             g_autofree char *where = dup_where(markers, marker);
+            g_autofree char *shift = hw_number_dup_fixed(shift_col, 2);
             g_set_error(
                 error, HW_RULING_ERROR, HW_RULING_ERROR_MARKERS,
-                "%s: its time and its column are %.2f columns apart on this recording; read the marker "
-                "again.",
-                where, shift_col);
+                "%s: its time and its column are %s columns apart on this recording; read the marker again.",
+                where, shift);
             return false;
         }
     }

@@ -99,19 +99,21 @@ append_rest(GString *text, const HwRules *rules)
             "Teams: sum of the times of the best %d; then sum of their places, then the best "
             "rider's place.\n",
             rules->team_riders);
-    if (rules->time_limit_percent > 0)
-        g_string_append_printf(text,
-                               "Time limit: the winner's time and %g %% (applied by the commissaires, not by "
-                               "the list).\n",
-                               rules->time_limit_percent);
+    if (rules->time_limit_percent > 0) {
+        g_autofree char *percent = hw_number_dup_double(rules->time_limit_percent);
+        g_string_append_printf(
+            text, "Time limit: the winner's time and %s %% (applied by the commissaires, not by the list).\n",
+            percent);
+    }
     if (rules->places_that_matter > 0)
         g_string_append_printf(text, "Places that matter most: 1 to %d.\n", rules->places_that_matter);
     if (rules->correction_limit_ns > 0) {
         g_autofree char *limit = dup_span(rules->correction_limit_ns);
         g_string_append_printf(text, "Corrections: within %s.\n", limit);
     }
-    g_string_append_printf(text, "Told apart: where the chance of the wrong order is at most %g %%.\n",
-                           rules->p_order_limit * 100);
+    g_autofree char *chance = hw_number_dup_double(rules->p_order_limit * 100);
+    g_string_append_printf(text, "Told apart: where the chance of the wrong order is at most %s %%.\n",
+                           chance);
 }
 
 char *

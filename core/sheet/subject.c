@@ -63,12 +63,14 @@ view_stretch(HwSubject *subject, GError **error)
     int64_t n_cells = hw_axis_get_n_cells(subject->axis);
     int64_t start = hw_axis_instant(subject->axis, 0), end = hw_axis_instant(subject->axis, (double)n_cells);
     if (picture->from_ns >= picture->to_ns || picture->to_ns <= start || picture->from_ns >= end) {
-        g_set_error(error, HW_SHEET_ERROR, HW_SHEET_ERROR_PLACE,
-                    "%s has no picture between %.6f s and %.6f s after its epoch; name a stretch between "
-                    "%.6f s and %.6f s.",
-                    hw_recording_get_path(hw_strip_get_recording(subject->strip)),
-                    (double)picture->from_ns * 1e-9, (double)picture->to_ns * 1e-9, (double)start * 1e-9,
-                    (double)end * 1e-9);
+        g_autofree char *wanted_from = hw_number_dup_fixed((double)picture->from_ns * 1e-9, 6);
+        g_autofree char *wanted_to = hw_number_dup_fixed((double)picture->to_ns * 1e-9, 6);
+        g_autofree char *from = hw_number_dup_fixed((double)start * 1e-9, 6);
+        g_autofree char *to = hw_number_dup_fixed((double)end * 1e-9, 6);
+        g_set_error(
+            error, HW_SHEET_ERROR, HW_SHEET_ERROR_PLACE,
+            "%s has no picture between %s s and %s s after its epoch; name a stretch between %s s and %s s.",
+            hw_recording_get_path(hw_strip_get_recording(subject->strip)), wanted_from, wanted_to, from, to);
         return false;
     }
     set_view(subject, 0, MAX(picture->from_ns, start), MIN(picture->to_ns, end));

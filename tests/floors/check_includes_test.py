@@ -47,6 +47,8 @@ VIOLATIONS = [
      "core_touches_no_main_context"),
     ("strip starts a thread", "core/strip/strip.c", "int f(void) { return pthread_create(0, 0, 0, 0); }\n",
      "core_starts_no_thread_outside_case"),
+    ("strip writes a number as the locale does", "core/strip/strip.c",
+     'char *f(double x) { return g_strdup_printf("%.3f ms", x); }\n', "core_writes_no_number_by_the_locale"),
     ("a floor nobody knows", "core/cellar/wine.c", SPDX, "every_file_stands_on_a_floor"),
     ("a file without a licence", "core/base/free.c", "int x;\n", "every_file_names_its_licence"),
 ]
